@@ -1,0 +1,1 @@
+"""What a liquid or a gas weighs: density models and density profiles over elevation."""
