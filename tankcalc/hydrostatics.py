@@ -15,7 +15,7 @@ import numpy as np
 import numpy.typing as npt
 
 from tankcalc.errors import RangeError
-from tankcalc.fluids.column import Column
+from tankcalc.fluids.column import Column, piece_of
 
 if TYPE_CHECKING:
     from tankcalc.geometry import Vessel
@@ -48,7 +48,7 @@ def head_pa(
 
     Examples
     --------
-    >>> from tankcalc.fluids.column import Column
+    >>> from tankcalc.fluids.column import Column, piece_of
     >>> from tankcalc.fluids.constant import Constant
     >>> water = Column.of([(Constant(1000.0).pieces(None), float("inf"))])
     >>> float(head_pa(water, 9.80665, 0.0, 10.0))
@@ -157,7 +157,7 @@ class Filling:
         start, plain, sloped = self._pieces
         if len(start) == 1:
             return np.asarray(start[0] + plain[0] * volume_m3 + sloped[0] * moment_m4)
-        k = np.searchsorted(self._edges, surface_m, side="right")
+        k = piece_of(surface_m, self._edges)
         return np.asarray(start[k] + plain[k] * volume_m3 + sloped[k] * moment_m4)
 
     def level_from_mass(self, mass_kg: npt.ArrayLike) -> FloatArray:

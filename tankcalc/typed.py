@@ -1,0 +1,214 @@
+"""What was typed becomes readings: the one door between text and the calculation."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from tankcalc import units
+from tankcalc.constants import STANDARD_ATMOSPHERE_PA
+from tankcalc.errors import QuantityError
+from tankcalc.instruments import DifferentialTransmitter, Transmitter
+from tankcalc.readings import Readings
+from tankcalc.tank import Tank
+from tankcalc.text import clean
+
+FAILED_BELOW_MA, FAILED_ABOVE_MA = 3.6, 21.0
+"""A 4-20 mA signal outside of these is that of a failed transmitter: NAMUR NE 43 (from memory)."""
+
+
+@dataclass(frozen=True, slots=True)
+class Field:
+    """One reading that can be typed.
+
+    Attributes
+    ----------
+    name : str
+        Its name on the command line, with underscores.
+    target : str
+        The field of `Readings` it fills.
+    dimension : str
+        What is measured.
+    help : str
+        What it is, in a few words, with an example.
+    """
+
+    name: str
+    target: str
+    dimension: str
+    help: str
+
+
+FIELDS: tuple[Field, ...] = (
+    Field("p1", "p1_pa", "pressure", 'bottom pressure, e.g. "98.2 kPa", "14.2 psi", "12.0 mA"'),
+    Field("p2", "p2_pa", "pressure", 'middle pressure, e.g. "61.4 kPa"'),
+    Field("p3", "p3_pa", "pressure", 'vapour-space pressure, e.g. "1.5 kPa"'),
+    Field("dp", "dp_pa", "pressure", 'differential pressure, high minus low, e.g. "-42 kPa"'),
+    Field("level", "level_m", "length", 'level above the datum, e.g. "8.42 m", "27 ft 7 1/2 in"'),
+    Field("ullage", "ullage_m", "length", 'from the reference point down, e.g. "3.10 m"'),
+    Field("water_level", "water_level_m", "length", 'top of the free water, e.g. "120 mm"'),
+    Field(
+        "temperature",
+        "temperatures",
+        "temperature",
+        'of the liquid, e.g. "18 degC", or at elevations "1 m: 18 degC, 5 m: 21 degC"',
+    ),
+    Field("air_temperature", "air_temperature_k", "temperature", 'outside, e.g. "12 degC"'),
+    Field("leg_temperature", "leg_temperature_k", "temperature", 'of the legs, e.g. "12 degC"'),
+    Field("barometer", "barometer_pa", "pressure", 'outside pressure, e.g. "1013.2 hPa"'),
+    Field("density", "density_kg_m3", "density", 'observed, at tank temperature: "845 kg/m3"'),
+    Field("sediment_water", "sediment_water", "fraction", 'sediment and water, e.g. "0.1 %"'),
+    Field("volume", "volume_m3", "volume", 'all the liquid, e.g. "2450 m3"'),
+    Field("mass", "mass_kg", "mass", 'all the liquid, e.g. "2100 t"'),
+)
+NAMES = {field.name: field for field in FIELDS}
+
+
+def readings_from_text(tank: Tank, typed: Mapping[str, str]) -> tuple[Readings, dict[str, str]]:
+    """Return the readings behind what was typed, and why any of it cannot be read.
+
+    Parameters
+    ----------
+    tank : Tank
+        Its transmitters say which reference and which range a pressure is in.
+    typed : mapping of str to str
+        By the names of `FIELDS`; blank texts count as not given.
+
+    Returns
+    -------
+    readings : Readings
+        SI. What could not be read is left out.
+    problems : dict of str to str
+        By field name: what is wrong and what to type instead.
+    """
+    values: dict[str, Any] = {}
+    problems: dict[str, str] = {}
+    for name, text in typed.items():
+        if not text.strip():
+            continue
+        field = NAMES.get(name)
+        if field is None:
+            problems[clean(name)] = "is not the name of a reading."
+            continue
+        try:
+            values[field.target] = _value(tank, field, text)
+        except QuantityError as error:
+            problems[name] = str(error)
+    return Readings(**values), problems
+
+
+def _value(tank: Tank, field: Field, text: str) -> Any:
+    if field.name in ("p1", "p2", "p3", "dp"):
+        return _transmitter_pressure(tank, field.name, text)
+    if field.target == "temperatures":
+        return _temperatures(text)
+    quantity = units.parse(text, field.dimension)
+    if field.name == "barometer":
+        return _barometer(quantity)
+    _check_possible(quantity, field)
+    return quantity.si
+
+
+def _transmitter_pressure(tank: Tank, tag: str, text: str) -> float:
+    """Return a reading (Pa) in the transmitter's own reference, from a pressure or its signal."""
+    fitted = tank.dp if tag == "dp" else tank.transmitters.get(tag)
+    quantity = units.parse_any(text, ("pressure", "current", "fraction"))
+    if fitted is None:
+        tags = [*sorted(tank.transmitters), *(["dp"] if tank.dp else [])]
+        raise QuantityError(
+            quantity.text, f"{tank.name} has no {tag} transmitter.", f"Fitted: {_listed(tags)}."
+        )
+    if quantity.dimension == "pressure":
+        _check_reference(fitted, tag, quantity)
+        return quantity.si
+    if quantity.dimension == "fraction" and quantity.unit != "%":
+        raise QuantityError(quantity.text, "the unit is missing.", 'Type "98.2 kPa" or "37.5 %".')
+    return _from_signal(fitted, tag, quantity)
+
+
+def _check_reference(
+    fitted: Transmitter | DifferentialTransmitter, tag: str, quantity: units.Quantity
+) -> None:
+    """Hold "barg", "kPa(a)" and bare "psi" against what the transmitter reads."""
+    if isinstance(fitted, DifferentialTransmitter):
+        if quantity.reference is not None:
+            why = f"{tag} is a difference, neither gauge nor absolute."
+            raise QuantityError(quantity.text, why, f'Type it as "{quantity.unit}".')
+        return
+    if quantity.reference not in (None, fitted.reads):
+        why = f"{tag} reads {fitted.reads} pressure, this is {quantity.reference}."
+        advice = "Type what the transmitter shows, or correct the tank file."
+        raise QuantityError(quantity.text, why, advice)
+    if quantity.reference is None and fitted.reads == "absolute" and quantity.unit == "psi":
+        why = f"psi may be gauge or absolute, and {tag} reads absolute pressure."
+        raise QuantityError(quantity.text, why, 'Type "psia" if that is what it shows.')
+
+
+def _from_signal(
+    fitted: Transmitter | DifferentialTransmitter, tag: str, quantity: units.Quantity
+) -> float:
+    """Return the pressure (Pa) behind a 4-20 mA signal or a percentage of range."""
+    if fitted.range_pa is None:
+        why = f"{tag} has no range in the tank file, so a signal says nothing."
+        raise QuantityError(quantity.text, why, "Type a pressure, or add the range.")
+    low, high = fitted.range_pa
+    share = quantity.si
+    if quantity.dimension == "current":
+        milliampere = quantity.si * 1000.0
+        if not FAILED_BELOW_MA <= milliampere <= FAILED_ABOVE_MA:
+            why = (
+                f"below {FAILED_BELOW_MA} and above {FAILED_ABOVE_MA} mA a transmitter has failed."
+            )
+            raise QuantityError(quantity.text, why, "No pressure can be read from it.")
+        share = (milliampere - 4.0) / 16.0
+    return low + share * (high - low)
+
+
+def _temperatures(text: str) -> tuple[tuple[float | None, float], ...]:
+    """Return (elevation in m or None, temperature in K) pairs of "18 degC" or "1 m: 18 degC, …"."""
+    if ":" not in text:
+        return ((None, _temperature(text)),)
+    pairs = []
+    for part in text.replace(";", ",").split(","):
+        where, colon, what = part.partition(":")
+        if not colon:
+            why = "each temperature needs its elevation."
+            raise QuantityError(clean(part), why, 'Type "1 m: 18 degC, 5 m: 21 degC".')
+        pairs.append((units.parse(where, "length").si, _temperature(what)))
+    elevations = [z for z, _ in pairs]
+    if len(set(elevations)) != len(elevations):
+        raise QuantityError(clean(text), "two temperatures are at one elevation.")
+    return tuple(pairs)
+
+
+def _temperature(text: str) -> float:
+    quantity = units.parse(text, "temperature")
+    _check_possible(quantity, NAMES["temperature"])
+    return quantity.si
+
+
+def _barometer(quantity: units.Quantity) -> float:
+    """Return the outside pressure (Pa absolute), refusing what no weather and no place gives."""
+    if quantity.reference == "gauge":
+        raise QuantityError(quantity.text, "a barometer reads absolute pressure.")
+    if not 0.5 <= quantity.si / STANDARD_ATMOSPHERE_PA <= 1.1:
+        why = "is no outside pressure on land."
+        raise QuantityError(quantity.text, why, 'Something like "1013 hPa" is expected.')
+    return quantity.si
+
+
+def _check_possible(quantity: units.Quantity, field: Field) -> None:
+    """Refuse values that nothing can have."""
+    low, high, why = {
+        "temperature": (0.0, 2000.0, "no liquid has this temperature."),
+        "density": (1.0, 20_000.0, "no liquid has this density."),
+        "fraction": (0.0, 1.0, "a share lies between 0 and 100 %."),
+    }.get(field.dimension, (-math.inf, math.inf, ""))
+    if not low <= quantity.si <= high:
+        raise QuantityError(quantity.text, why, f"Expected {field.help}.")
+
+
+def _listed(names: list[str]) -> str:
+    return ", ".join(names) or "none"

@@ -1,0 +1,70 @@
+"""How fast a million pressures become level, volume and mass, beside a plain copy of them.
+
+Run ``python tests/benchmarks/bench_evaluate.py``. Wall times of shared machines wander, so the
+figure to quote is the ratio to the copy, taken in the same run.
+"""
+
+from __future__ import annotations
+
+import sys
+import time
+from collections.abc import Callable
+from pathlib import Path
+
+import numpy as np
+
+sys.path.insert(0, str(Path(__file__).parent.parent))
+
+from tanks import single, transmitters, upright
+
+from tankcalc.fluids.samples import Samples
+from tankcalc.gauging import evaluate
+from tankcalc.geometry import horizontal_cylinder, torispherical_standard
+from tankcalc.gauging.case import Case
+from tankcalc.gauging.surface import find_surface
+from tankcalc.readings import Readings
+
+COUNT = 1_000_000
+ROUNDS = 7
+
+
+def best(work: Callable[[], object]) -> float:
+    """Return the shortest of several wall times, s, after one that is not counted."""
+    work()
+    times = []
+    for _ in range(ROUNDS):
+        start = time.perf_counter()
+        work()
+        times.append(time.perf_counter() - start)
+    return min(times)
+
+
+def main() -> None:
+    """Print the rates and the ratios."""
+    head = torispherical_standard("DIN 28011", 3.0)
+    for slope in (0.0, 0.02):
+        vessel = horizontal_cylinder(3.0, 9.0, head, head, slope=slope, dip_at_m=1.0)
+        tank = upright(vessel=vessel, transmitters=transmitters(p1=0.1))
+        brine = Samples((0.3, 1.0, 1.6, 2.5), (1190.0, 1150.0, 1120.0, 1080.0))
+        pressures = np.random.default_rng(1).uniform(1_000.0, 28_000.0, COUNT)
+
+        def contents() -> object:
+            case = Case.of(tank, single(brine), Readings(p1_pa=pressures))
+            level = find_surface(case).level_m
+            volume, moment = vessel.volume_and_moment(level)
+            return case.filling.mass_from(level, volume, moment)
+
+        copy = best(pressures.copy)
+        for name, work in (
+            ("p1 -> level -> volume -> mass", contents),
+            ("evaluate, every figure", lambda: evaluate(tank, single(brine), Readings(p1_pa=pressures))),
+        ):
+            took = best(work)
+            print(
+                f"slope {slope:4.2f}  {name:32} {COUNT / took / 1e6:6.2f} million/s, "
+                f"{took / copy:7.1f} times a plain copy ({copy * 1e3:.2f} ms)"
+            )
+
+
+if __name__ == "__main__":
+    main()
