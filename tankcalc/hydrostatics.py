@@ -206,7 +206,7 @@ class Filling:
         modulus = self.column.bulk_modulus_pa
         assert modulus is not None
         grid = np.linspace(self.vessel.z_min, self.vessel.z_max, COMPRESSION_STEPS + 1)
-        nodes = np.unique(np.concatenate((grid, self._edges)))
+        nodes = sorted({*grid.tolist(), *self._edges.tolist()})
         below_surface = self.column.areal_mass_to(surface_m)
 
         def density(z: FloatArray) -> FloatArray:
@@ -257,7 +257,9 @@ def rising_root(
         with np.errstate(divide="ignore", invalid="ignore"):
             step = place - miss / slope
         inside = (step >= left) & (step <= right)
-        better: FloatArray = np.where(miss == 0.0, place, np.where(inside, step, 0.5 * (left + right)))
+        better: FloatArray = np.where(
+            miss == 0.0, place, np.where(inside, step, 0.5 * (left + right))
+        )
         if np.all(np.abs(better - place) <= 1e-15 * (high - low)):
             return better
         place = better

@@ -11,8 +11,8 @@ def clean(text: str, limit: int = 200) -> str:
     r"""Return the text with nothing in it that a terminal could act on.
 
     Control characters, C1 codes, bidirectional marks, zero-width and private characters go;
-    runs of white space become one blank; what is longer than ``limit`` characters is cut and
-    ends in three points.
+    runs of white space become one blank; what is longer than ``limit`` characters (at least
+    3) is cut and ends in three points.
 
     Examples
     --------
@@ -21,8 +21,10 @@ def clean(text: str, limit: int = 200) -> str:
     >>> clean("a" * 10, limit=6)
     'aaa...'
     """
-    spaced = "".join(" " if ch.isspace() else ch for ch in text[: 8 * limit])
+    read = text[: 8 * limit]
+    spaced = "".join(" " if ch.isspace() else ch for ch in read)
     normal = unicodedata.normalize("NFC", spaced)
     kept = "".join(ch for ch in normal if unicodedata.category(ch) not in _DROPPED)
     joined = " ".join(kept.split())
-    return joined if len(joined) <= limit else joined[: limit - 3] + "..."
+    whole = len(read) == len(text) and len(joined) <= limit
+    return joined if whole else joined[: limit - 3] + "..."

@@ -64,6 +64,7 @@ def readings_from(tank: Tank, typed: dict[str, str]) -> Readings:
     from tankcalc.typed import readings_from_text
 
     readings, problems = readings_from_text(tank, typed)
+    problems |= {name: "is empty." for name, text in typed.items() if not text.strip()}
     if problems:
         lines = (f"--{name.replace('_', '-')} {why}" for name, why in problems.items())
         raise InputError("\n".join(lines))

@@ -27,6 +27,9 @@ COMMANDS = {
 }
 """Every command with what it does, in the order of the help."""
 
+MANY_VALUES = ("paths",)
+"""Arguments that may hold no value at all."""
+
 GARBAGE_THRESHOLD = 50_000
 """Objects made before the collector first looks: start-up makes no cycles worth a search."""
 
@@ -43,7 +46,7 @@ def main(argv: Sequence[str]) -> int:
             stream.reconfigure(errors="backslashreplace")
     try:
         words = _with_command(joined_negatives(argv))
-        args = _parser(words).parse_args(words)
+        args = _parsed(words)
         code = _module(args.command).run(args)
         sys.stdout.flush()
     except TankcalcError as error:
@@ -71,6 +74,17 @@ def main(argv: Sequence[str]) -> int:
         return 1
     else:
         return int(code)
+
+
+def _parsed(words: Sequence[str]) -> argparse.Namespace:
+    """Return the parsed arguments."""
+    parser = _parser(words)
+    args = parser.parse_args(words)
+    for name, value in vars(args).items():
+        # argparse makes an empty list of the value "--".
+        if value == [] and name not in MANY_VALUES:
+            parser.error(f"argument --{name.replace('_', '-')}: expected one argument")
+    return args
 
 
 def _parser(argv: Sequence[str]) -> argparse.ArgumentParser:

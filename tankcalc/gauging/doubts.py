@@ -62,7 +62,7 @@ def _surroundings(case: Case) -> Iterator[Notice]:
     if around.air_from == "assumed":
         yield Notice(
             "air_assumed",
-            f"The site says nothing of its air: {around.air_density_kg_m3:.3f} kg/m3 is used.",
+            f"The site does not state its air fully: {around.air_density_kg_m3:.3f} kg/m3 is used.",
         )
     needs_barometer = any(t.reads == "absolute" for t in case.tank.transmitters.values())
     unread = case.readings.barometer_pa is None
