@@ -93,8 +93,8 @@ def test_hostile_names_and_folders(
 ) -> None:
     site = str(make_site(tmp_path / "site"))
     for poison in POISON:
-        if "\x00" in poison and word == "vet":
-            continue  # no operating system passes it on a command line
+        if word == "vet" and poison == "--":
+            continue  # ends the options; no path follows, so the whole site is checked
         try:
             code = main(["--profiles", site, word, poison])
         except SystemExit as left:
