@@ -99,10 +99,10 @@ def _parser(argv: Sequence[str]) -> argparse.ArgumentParser:
     parser.add_argument("--version", action=_Version, nargs=0, help="print the version")
     subparsers = parser.add_subparsers(dest="command", metavar="COMMAND", title="commands")
     called = _command_in(argv)
-    for name, summary in COMMANDS.items():
-        if name == called:
-            _module(name).add_parser(subparsers)
-        else:
+    if called in COMMANDS:
+        _module(called).add_parser(subparsers)
+    else:
+        for name, summary in COMMANDS.items():
             subparsers.add_parser(name, help=summary)
     return parser
 
