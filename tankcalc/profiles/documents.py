@@ -75,12 +75,14 @@ class Document:
         self.readable = self._load()
 
     @property
+    def whole(self) -> bytes:
+        """The file's bytes, followed by those of the files beside it that it refers to."""
+        return b"".join((self.held, *self.findings.beside.values()))
+
+    @property
     def version(self) -> str:
-        """SHA-256 of the file's bytes and of those beside it that it refers to, in hex."""
-        digest = hashlib.sha256(self.held)
-        for held in self.findings.beside.values():
-            digest.update(held)
-        return digest.hexdigest()
+        """SHA-256 of all the bytes, in hex."""
+        return hashlib.sha256(self.whole).hexdigest()
 
     def problems(self) -> list[Problem]:
         """Return everything found wrong, each with its line where that can be told."""

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from pathlib import Path
 from types import MappingProxyType
 from typing import TYPE_CHECKING, cast
@@ -63,6 +63,7 @@ class Site:
     log_store: str | None
     surroundings: Surroundings
     version: str
+    _texts: dict[str, bytes] = field(default_factory=dict, repr=False, compare=False)
 
     def tank_names(self) -> list[str]:
         """Return the names of the tanks, sorted; no file is read."""
@@ -85,6 +86,7 @@ class Site:
         document = self._document(TANKS, name, self.tank_names())
         tank = read_tank(document, self.surroundings)
         document.refuse()
+        self._texts[document.version] = document.whole
         return cast("Tank", tank)
 
     def fluid(self, name: str) -> Fluid:
@@ -100,6 +102,7 @@ class Site:
         document = self._document(FLUIDS, name, self.fluid_names())
         fluid = read_fluid(document)
         document.refuse()
+        self._texts[document.version] = document.whole
         return cast("Fluid", fluid)
 
     def fluid_for(self, tank: Tank, chosen: str | None) -> Fluid:
@@ -115,6 +118,16 @@ class Site:
             advice = did_you_mean("", self.fluid_names())
             raise ProfileError([Problem(f"{TANKS}/{tank.file}{SUFFIX}", "contents", what, advice)])
         return self.fluid(tank.contents if chosen is None else chosen)
+
+    def text(self, version: str) -> bytes:
+        """Return the bytes that a version of this site, a tank or a fluid read here stands for.
+
+        Raises
+        ------
+        KeyError
+            Nothing of that version has been read.
+        """
+        return self._texts[version]
 
     def _document(self, kind: str, name: str, known: list[str]) -> Document:
         """Return the file of that exact name; a name is looked up, never made into a path."""
@@ -159,4 +172,5 @@ def read_site(document: Document, *, is_demo: bool = False) -> Site | None:
         log_store=(values["log"] or {}).get("store"),
         surroundings=around,
         version=document.version,
+        _texts={document.version: document.whole},
     )
