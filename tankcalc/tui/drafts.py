@@ -1,0 +1,104 @@
+"""Unfinished entries between the desk and the disk."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from datetime import datetime
+from pathlib import Path
+
+from tankcalc.text import clean
+from tankcalc.tui.desk import Desk
+from tankcalc.tui.draft import Draft, Journal, Orphan, orphans
+from tankcalc.tui.present import Line, wrapped
+
+
+class Drafts:
+    """Keeps what is typed, and what dead consoles left; says once when the disk takes nothing."""
+
+    def __init__(self, folder: Path, site: str) -> None:
+        self._folder, self._site = folder, site
+        self._journal: Journal | None = None
+        self._left: list[Orphan] = []
+        self.trouble = ""
+
+    def open(self) -> None:
+        """Begin a journal, and look for those nobody holds."""
+        try:
+            self._journal = Journal(self._folder)
+            self._left = list(orphans(self._folder, self._site))
+        except OSError as error:
+            self._fail(error)
+
+    @property
+    def left(self) -> list[Draft]:
+        """What dead consoles left: the newest state of each tank, newest last."""
+        newest: dict[str, Draft] = {}
+        found = (draft for orphan in self._left for draft in orphan.drafts)
+        for draft in sorted(found, key=lambda draft: draft.at_us):
+            newest[draft.tank] = draft
+        return list(newest.values())
+
+    def keep(self, desk: Desk, tank: str, now_us: int) -> None:
+        """Write down what is typed for a tank."""
+        entry = desk.entry_of(tank)
+        draft = Draft(self._site, tank, entry.fluid, dict(entry.fields), now_us)
+        if self._journal is not None:
+            try:
+                self._journal.keep(draft)
+            except OSError as error:
+                self._fail(error)
+
+    def settle(self) -> None:
+        """Return once what was kept survives a power cut; called apart from the keys."""
+        if self._journal is not None:
+            try:
+                self._journal.settle()
+            except OSError as error:
+                self._fail(error)
+
+    def adopt(self, desk: Desk) -> None:
+        """Put what dead consoles left on the desk, and their journals away."""
+        for draft in self.left:
+            entry = desk.entry_of(draft.tank)
+            entry.fields = {**draft.typed, **entry.fields}
+            entry.fluid = entry.fluid or draft.fluid
+            self.keep(desk, draft.tank, draft.at_us)
+            desk.tank_name = draft.tank
+        self.settle()
+        self.discard()
+
+    def discard(self) -> None:
+        """Throw away what dead consoles left."""
+        for orphan in self._left:
+            orphan.remove()
+        self._left = []
+
+    def later(self) -> None:
+        """Leave it for the next start."""
+        for orphan in self._left:
+            orphan.release()
+        self._left = []
+
+    def close(self) -> None:
+        """Let go of the journal."""
+        if self._journal is not None:
+            self._journal.close()
+            self._journal = None
+
+    def _fail(self, error: OSError) -> None:
+        why = error.strerror or "it failed"
+        self.trouble = f"What is typed is NOT KEPT if the link drops: {self._folder}: {why}."
+
+
+def draft_lines(drafts: Sequence[Draft], now_us: int, width: int) -> list[Line]:
+    """Return when each was typed and what it holds."""
+    lines: list[Line] = []
+    for draft in reversed(drafts):
+        # The site's zone is not read yet; this machine's clock is shown with its offset.
+        typed_at = datetime.fromtimestamp(draft.at_us / 1e6).astimezone().strftime("%H:%M %z")
+        minutes = max((now_us - draft.at_us) // 60_000_000, 0)
+        age = f"{minutes} min" if minutes < 120 else f"{minutes // 60} h"
+        held = "; ".join(f"{name} {clean(text)}" for name, text in draft.typed.items())
+        words = f"Unfinished entry from {typed_at} ({age} ago), {draft.tank}: {held}"
+        lines += wrapped(words, "", width)
+    return lines

@@ -1,0 +1,3 @@
+"""The parts of the screen."""
+
+from __future__ import annotations
