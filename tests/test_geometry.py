@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import math
+import subprocess
+import sys
 from collections.abc import Callable
 
 import numpy as np
@@ -329,3 +331,19 @@ def test_the_tip_and_the_rim_belong_to_the_vessel() -> None:
 
 def test_a_vessel_says_what_it_is() -> None:
     assert repr(sphere(10.0)) == "<sphere, 523.599 m3 from 0 m to 10 m>"
+
+
+def test_naming_the_package_or_an_end_loads_no_numpy() -> None:
+    code = (
+        "import sys; from tankcalc.geometry import ConeEnd, FlatEnd; print('numpy' in sys.modules)"
+    )
+    done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
+    assert done.stdout == "False\n"
+
+
+def test_an_unknown_name_is_no_attribute_of_the_package() -> None:
+    import tankcalc.geometry as geometry
+
+    assert "sphere" in dir(geometry)
+    with pytest.raises(AttributeError, match="no attribute 'cube'"):
+        geometry.cube  # noqa: B018 (the look-up is the test)

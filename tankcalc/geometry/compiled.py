@@ -13,7 +13,7 @@ from tankcalc.geometry.table import Figures, tabulated
 MOST_BREAKS = 48
 """A body with more of them (a long strapping table) is looked up piece by piece."""
 
-AGREEMENT = 1e-13
+AGREEMENT = 2e-14
 """Largest deviation of a volume from the exact one, as a share of capacity."""
 
 AREA_AGREEMENT = 1e-11

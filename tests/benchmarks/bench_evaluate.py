@@ -19,9 +19,9 @@ from tanks import single, transmitters, upright
 
 from tankcalc.fluids.samples import Samples
 from tankcalc.gauging import evaluate
-from tankcalc.geometry import horizontal_cylinder, torispherical_standard
 from tankcalc.gauging.case import Case
 from tankcalc.gauging.surface import find_surface
+from tankcalc.geometry import horizontal_cylinder, torispherical_standard
 from tankcalc.readings import Readings
 
 COUNT = 1_000_000
@@ -39,32 +39,33 @@ def best(work: Callable[[], object]) -> float:
     return min(times)
 
 
-def main() -> None:
-    """Print the rates and the ratios."""
+def measure(slope: float) -> None:
+    """Print the rates for one tilt of the vessel."""
     head = torispherical_standard("DIN 28011", 3.0)
-    for slope in (0.0, 0.02):
-        vessel = horizontal_cylinder(3.0, 9.0, head, head, slope=slope, dip_at_m=1.0)
-        tank = upright(vessel=vessel, transmitters=transmitters(p1=0.1))
-        brine = Samples((0.3, 1.0, 1.6, 2.5), (1190.0, 1150.0, 1120.0, 1080.0))
-        pressures = np.random.default_rng(1).uniform(1_000.0, 28_000.0, COUNT)
+    vessel = horizontal_cylinder(3.0, 9.0, head, head, slope=slope, dip_at_m=1.0)
+    tank = upright(vessel=vessel, transmitters=transmitters(p1=0.1))
+    brine = single(Samples((0.3, 1.0, 1.6, 2.5), (1190.0, 1150.0, 1120.0, 1080.0)))
+    pressures = np.random.default_rng(1).uniform(1_000.0, 28_000.0, COUNT)
+    readings = Readings(p1_pa=pressures)
 
-        def contents() -> object:
-            case = Case.of(tank, single(brine), Readings(p1_pa=pressures))
-            level = find_surface(case).level_m
-            volume, moment = vessel.volume_and_moment(level)
-            return case.filling.mass_from(level, volume, moment)
+    def contents() -> object:
+        case = Case.of(tank, brine, readings)
+        level = find_surface(case).level_m
+        volume, moment = vessel.volume_and_moment(level)
+        return case.filling.mass_from(level, volume, moment)
 
-        copy = best(pressures.copy)
-        for name, work in (
-            ("p1 -> level -> volume -> mass", contents),
-            ("evaluate, every figure", lambda: evaluate(tank, single(brine), Readings(p1_pa=pressures))),
-        ):
-            took = best(work)
-            print(
-                f"slope {slope:4.2f}  {name:32} {COUNT / took / 1e6:6.2f} million/s, "
-                f"{took / copy:7.1f} times a plain copy ({copy * 1e3:.2f} ms)"
-            )
+    copy = best(pressures.copy)
+    for name, work in (
+        ("p1 -> level -> volume -> mass", contents),
+        ("evaluate, every figure", lambda: evaluate(tank, brine, readings)),
+    ):
+        took = best(work)
+        print(
+            f"slope {slope:4.2f}  {name:32} {COUNT / took / 1e6:6.2f} million/s, "
+            f"{took / copy:7.1f} times a plain copy ({copy * 1e3:.2f} ms)"
+        )
 
 
 if __name__ == "__main__":
-    main()
+    for tilt in (0.0, 0.02):
+        measure(tilt)
