@@ -192,7 +192,7 @@ def test_the_banner_tells_when_and_what(tmp_path: Path) -> None:
     later = DRAFT.at_us + 14 * 60_000_000
     text = "".join(word for line in draft_lines([DRAFT], later, 200) for word, _ in line)
     assert text.startswith("Unfinished entry from ")
-    assert text.endswith("(14 min ago), V-1: p1 98.7 mbar")
+    assert text.endswith("(14 min ago), V-1: p1 bottom 98.7 mbar")
 
 
 def test_a_state_folder_that_is_a_file_is_told_and_stops_nothing(tmp_path: Path) -> None:

@@ -11,6 +11,7 @@ import pytest
 from sites import OIL, TANK, make_site
 from textual import events
 from textual._context import visible_screen_stack
+from textual.pilot import Pilot
 
 from tankcalc.shiftlog import open_store
 from tankcalc.tui.actions import Actions
@@ -26,9 +27,9 @@ NAMES = {" ": "space", ".": "full_stop", "?": "question_mark"}
 class Console:
     """A console in front of a test."""
 
-    def __init__(self, app: ConsoleApp, press: Callable[..., Awaitable[None]]) -> None:
+    def __init__(self, app: ConsoleApp, pilot: Pilot[None]) -> None:
         self.app = app
-        self._press = press
+        self.pilot = pilot
 
     @property
     def text(self) -> str:
@@ -43,7 +44,7 @@ class Console:
         return next((row for row in self.text.splitlines() if wanted in row), "")
 
     async def press(self, *keys: str) -> None:
-        await self._press(*keys)
+        await self.pilot.press(*keys)
 
     async def type(self, text: str) -> None:
         await self.burst(*text)
@@ -53,7 +54,7 @@ class Console:
         for key in keys:
             character = key if len(key) == 1 else None
             self.app.post_message(events.Key(NAMES.get(key, key), character))
-        await self._press()
+        await self.pilot.pause()
 
     async def wait(self, wanted: str | Callable[[str], bool]) -> None:
         is_there = (lambda text: wanted in text) if isinstance(wanted, str) else wanted
@@ -76,9 +77,14 @@ Story = Callable[[Console], Awaitable[None]]
 
 
 def play(
-    story: Story, tmp_path: Path, *, size: tuple[int, int] = (80, 24), **options: object
-) -> ConsoleApp:
-    """Open a console on the test site and let a story happen in it."""
+    story: Story,
+    tmp_path: Path,
+    *,
+    size: tuple[int, int] = (80, 24),
+    opening: str = "READINGS  (",
+    **options: object,
+) -> None:
+    """Open a console on the test site, let a story happen in it, and leave it in order."""
     site = tmp_path / "site"
     if not site.exists():
         make_site(site)
@@ -87,12 +93,12 @@ def play(
 
     async def run() -> None:
         async with app.run_test(size=size) as pilot:
-            console = Console(app, pilot.press)
-            await console.wait("READINGS  (")
+            console = Console(app, pilot)
+            await console.wait(opening)
             await story(console)
+            app.exit()
 
     asyncio.run(run())
-    return app
 
 
 def test_one_screen_of_80_by_24_shows_everything(tmp_path: Path) -> None:
@@ -123,7 +129,7 @@ def test_the_result_follows_every_key_and_goes_when_the_text_is_not_valid(tmp_pa
         assert "6.505" not in console.text, "no figure outlives the text it came from"
         assert "▓" not in console.text
         assert "X 50 kP" in console.text
-        assert "p1:" in console.text
+        assert "p1 bottom: \"50 kP\"" in console.text
         await console.press("a")
         await console.wait("6.505 m")
 
@@ -164,18 +170,17 @@ def test_one_bad_field_blanks_the_result_of_the_others(tmp_path: Path) -> None:
 
 
 def test_what_is_typed_before_the_calculation_is_loaded_is_answered_when_it_is(
-    tmp_path: Path,
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    app = ConsoleApp(Options(make_site(tmp_path / "site"), tmp_path / "state"))
+    monkeypatch.setattr("tankcalc.tui.app.ENGINE_DELAY_S", 0.5)
 
-    async def run() -> None:
-        async with app.run_test(size=(80, 24)) as pilot:
-            console = Console(app, pilot.press)
-            await console.type("50 kPa")
-            await console.wait("50 kPa")
-            await console.wait("6.505 m")
+    async def story(console: Console) -> None:
+        await console.type("50 kPa")
+        await console.wait("50 kPa")
+        assert "Loading the calculation" in console.text
+        await console.wait("6.505 m")
 
-    asyncio.run(run())
+    play(story, tmp_path, opening="F10 quit")
 
 
 def test_another_tank_has_its_own_fields_and_keeps_its_own_text(tmp_path: Path) -> None:
@@ -256,7 +261,7 @@ def test_a_reading_is_shown_confirmed_saved_and_listed(tmp_path: Path) -> None:
         await console.press("f5")
         await console.wait("LOG THIS READING?")
         assert "V-1, Oil" in console.text
-        assert "Typed: p1 50 kPa" in console.text
+        assert "Typed: p1 bottom 50 kPa" in console.text
         assert "level 6.505 m" in console.text
         assert "shut v3" in console.row("note")
         await console.press("enter")
@@ -368,17 +373,13 @@ def test_what_could_not_be_saved_is_kept_and_sent_again(tmp_path: Path) -> None:
 def test_a_site_that_cannot_be_read_says_so(tmp_path: Path) -> None:
     site = make_site(tmp_path / "site")
     (site / "site.toml").write_text("name = 7\n")
-    app = ConsoleApp(Options(site, tmp_path / "state"))
 
-    async def run() -> None:
-        async with app.run_test(size=(80, 24)) as pilot:
-            console = Console(app, pilot.press)
-            await console.wait("site.toml:1: name")
-            await console.press("f5")
-            await console.press("f10")
-            await console.wait("LEAVE THE CONSOLE?")
+    async def story(console: Console) -> None:
+        await console.press("f5")
+        await console.press("f10")
+        await console.wait("LEAVE THE CONSOLE?")
 
-    asyncio.run(run())
+    play(story, tmp_path, opening="site.toml:1: name")
 
 
 def test_a_tank_that_cannot_be_read_is_marked_and_told_and_the_others_work(tmp_path: Path) -> None:
@@ -454,10 +455,10 @@ def test_esc_leaves_the_field_and_loses_nothing_and_a_digit_goes_back(tmp_path: 
 
 def test_down_reaches_the_fields_below_and_says_how_many(tmp_path: Path) -> None:
     async def story(console: Console) -> None:
-        await console.wait("7 more below")
+        await console.wait("8 more below")
         await console.press(*["down"] * 6)
         await console.wait(">density")
-        await console.wait("3 more below")
+        await console.wait("5 more below")
 
     play(story, tmp_path)
 
@@ -477,8 +478,7 @@ def test_quitting_asks_and_keeps_an_unfinished_entry_for_the_next_start(tmp_path
     play(leave, tmp_path)
 
     async def keep(console: Console) -> None:
-        await console.wait("Unfinished entry from")
-        assert "p1 50 kPa" in console.text
+        assert "p1 bottom 50 kPa" in console.text
         await console.press("enter")
         await console.wait("6.505 m")
         await console.press("f8")
@@ -486,15 +486,14 @@ def test_quitting_asks_and_keeps_an_unfinished_entry_for_the_next_start(tmp_path
         await console.press("f8")
         await console.wait("6.505 m")
 
-    play(keep, tmp_path)
+    play(keep, tmp_path, opening="Unfinished entry from")
 
     async def discard(console: Console) -> None:
-        await console.wait("Unfinished entry from")
         await console.press("delete")
         await console.gone("Unfinished entry")
         assert "50 kPa" not in console.text
 
-    play(discard, tmp_path)
+    play(discard, tmp_path, opening="Unfinished entry from")
 
     async def nothing_left(console: Console) -> None:
         assert "Unfinished entry" not in console.text
@@ -518,21 +517,16 @@ def test_a_larger_screen_is_used(tmp_path: Path) -> None:
 def test_too_small_a_screen_says_so_and_still_answers(
     tmp_path: Path, size: tuple[int, int]
 ) -> None:
-    app = ConsoleApp(Options(make_site(tmp_path / "site"), tmp_path / "state"))
-
-    async def run() -> None:
-        async with app.run_test(size=size) as pilot:
-            console = Console(app, pilot.press)
-            await pilot.press(*"50", "space", *"kPa")
-            need = f"need 80x24, have {size[0]}x{size[1]}"
-            await console.wait(need[: size[0]])
-            if size[1] >= 10:
-                await console.wait("6.505 m")
-            await pilot.resize_terminal(80, 24)
-            await console.wait("TANKS")
+    async def story(console: Console) -> None:
+        await console.type("50 kPa")
+        if size[1] >= 10:
             await console.wait("6.505 m")
+        await console.pilot.resize_terminal(80, 24)
+        await console.wait("TANKS")
+        await console.wait("6.505 m")
 
-    asyncio.run(run())
+    opening = f"need 80x24, have {size[0]}x{size[1]}"[: size[0]]
+    play(story, tmp_path, size=size, opening=opening)
 
 
 def test_the_demo_says_that_it_is_the_demo(tmp_path: Path) -> None:
@@ -624,6 +618,62 @@ def test_the_engine_posts_a_site_once(tmp_path: Path) -> None:
     posted: list[object] = []
     from tankcalc.tui import engine
 
-    engine._load(make_site(tmp_path / "site"), False, posted.append)
-    assert [type(message) for message in posted][0] is EngineReady
+    engine.load(make_site(tmp_path / "site"), False, tmp_path, posted.append)
+    assert isinstance(posted[0], EngineReady)
     assert len(posted) == 2
+
+
+def test_a_command_that_fails_is_told_and_the_console_goes_on(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def broken(_self: Actions) -> None:
+        raise ZeroDivisionError("the story's own")
+
+    monkeypatch.setattr(Actions, "units", broken)
+
+    async def story(console: Console) -> None:
+        await console.press("f3")
+        await console.wait("This program failed. ZeroDivisionError: the story's own")
+        await console.type("50 kPa")
+        await console.wait("6.505 m")
+
+    play(story, tmp_path)
+
+
+def test_an_entry_that_makes_the_log_fail_is_not_saved_and_kept(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def broken(*_: object) -> None:
+        raise ZeroDivisionError("the story's own")
+
+    monkeypatch.setattr("tankcalc.shiftlog.sqlite_store.SqliteStore.append", broken)
+
+    async def story(console: Console) -> None:
+        await console.type("50 kPa")
+        await console.wait("* GOOD")
+        await console.burst("f5", *"JD", "enter")
+        await console.wait("NOT SAVED: this program failed (ZeroDivisionError")
+        await console.press("escape")
+        await console.wait("6.505 m")
+
+    play(story, tmp_path)
+
+
+def test_a_defect_of_the_screen_itself_ends_in_words(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    async def story(console: Console) -> None:
+        def broken(*_: object) -> None:
+            raise ZeroDivisionError("the story's own")
+
+        monkeypatch.setattr(console.app.main, "answer", broken)
+        await console.type("5")
+        while console.app.is_running:
+            await asyncio.sleep(0.01)
+
+    with pytest.raises(ZeroDivisionError):
+        play(story, tmp_path)
+    said = capsys.readouterr().err
+    assert "tankcalc: stopped. ZeroDivisionError: the story's own" in said
+    assert "Traceback" not in said
+    assert "the story's own" in (tmp_path / "state" / "defects.txt").read_text()

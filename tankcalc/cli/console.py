@@ -56,4 +56,7 @@ def run(args: argparse.Namespace) -> int:
     )
     app = ConsoleApp(options)
     app.run(mouse=args.mouse)
-    return app.return_code or 0
+    status = app.return_code or 0
+    if status > 128:
+        terminal.let_go()
+    return status

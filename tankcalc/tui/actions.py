@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from tankcalc.tui.fields import label_of
 from tankcalc.tui.help_text import help_lines
 from tankcalc.tui.log_lines import clock
 from tankcalc.tui.logbook import Unsaved
@@ -60,10 +61,10 @@ class Actions:
     def log(self) -> None:
         """Show what will be logged, and save it on Enter."""
         app, answer = self._app, self._app.front.answer
-        if app.book is None or answer.result is None:
-            return app.main.say(
-                f"Nothing to log. {answer.why or app.front.log_trouble or NOT_READY}"
-            )
+        if app.book is None:
+            return app.main.say(app.front.log_trouble or NOT_READY)
+        if answer.result is None:
+            return app.main.say(f"Nothing to log. {answer.why}")
         unsaved, again = self._entry()
         time = clock(unsaved.entry.t_us, app.book.zone)
         width = app.size.width - 2
@@ -105,10 +106,8 @@ class Actions:
 
     def _take_fluid(self, name: str | None) -> None:
         if name is not None:
-            usual = (
-                self._app.front.answer.tank is not None
-                and name == self._app.front.answer.tank.contents
-            )
+            tank = self._app.front.answer.tank
+            usual = tank is not None and name == tank.contents
             self._desk.entry.fluid = "" if usual else name
             self._desk.entry.unsaved = None
             self._app.keep_draft()
@@ -158,14 +157,15 @@ class Actions:
         self._desk.who = outcome.who
         if outcome.receipt is not None:
             held.done()
+            self._app.main.form.go()
             said = f"SAVED, on disk: entry {outcome.receipt.seq} of the log."
-            self._app.front.read_log()
         else:
             held.type("note", outcome.note)
             held.unsaved = outcome.sent
             said = "NOT SAVED; the entry is kept here." if outcome.sent else "Not logged."
         self._app.main.form.fill(held.fields)
         self._app.keep_draft()
+        self._app.front.read_log()
         self._app.front.show_answer(said)
 
     def _noted(self, outcome: Outcome | None) -> None:
@@ -173,13 +173,13 @@ class Actions:
         self._desk.who = outcome.who
         if outcome.receipt is not None:
             self._app.main.say(f"SAVED, on disk: entry {outcome.receipt.seq} of the log.")
-            self._app.front.read_log()
         else:
             self._app.main.say("The note was NOT SAVED." if outcome.sent else "No note logged.")
+        self._app.front.read_log()
 
     def _in_full(self, width: int) -> list[Line]:
         answer = self._app.front.answer
         lines = [result_title(answer)]
-        lines += [[(f"{name}: {text}", "")] for name, text in answer.typed.items()]
+        lines += [[(f"{label_of(name)}: {text}", "")] for name, text in answer.typed.items()]
         lines += [figure(row.label, row.value, width) for row in self._app.front.rows]
         return [*lines, [], *all_messages(answer, width)]

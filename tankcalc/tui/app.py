@@ -10,6 +10,7 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, ClassVar
 
+from rich.text import Text
 from textual import events
 from textual.app import App
 from textual.binding import Binding, BindingType
@@ -18,6 +19,7 @@ from textual.screen import Screen
 
 from tankcalc.errors import TankcalcError
 from tankcalc.tui import engine, messages
+from tankcalc.tui.defects import note_defect
 from tankcalc.tui.desk import Desk
 from tankcalc.tui.drafts import Drafts
 from tankcalc.tui.front import Front, now_us
@@ -109,7 +111,8 @@ class ConsoleApp(App[None]):
         self.front.show_header()
         await self.main.form.complete(self.desk.entry.fields)
         folder, is_demo = self.options.folder, self.options.is_demo
-        self.set_timer(ENGINE_DELAY_S, lambda: engine.start(folder, is_demo, self.post_message))
+        state, post = self.options.state, self.post_message
+        self.set_timer(ENGINE_DELAY_S, lambda: engine.start(folder, is_demo, state, post))
 
     def on_unmount(self) -> None:
         """Let go of what is held on disk."""
@@ -159,7 +162,10 @@ class ConsoleApp(App[None]):
         """Do what the command says."""
         from tankcalc.tui.actions import Actions
 
-        getattr(Actions(self), message.id)()
+        try:
+            getattr(Actions(self), message.id)()
+        except Exception as error:  # noqa: BLE001 - one command that fails must not end the shift
+            self.main.say(f"This program failed. {note_defect(self.options.state, error)}")
 
     def action_ask_quit(self) -> None:
         """Ask before leaving, once."""
@@ -192,6 +198,15 @@ class ConsoleApp(App[None]):
             self.drafts.later()
         else:
             self.drafts.discard()
+
+    def _fatal_error(self) -> None:
+        """Leave with words instead of the library's traceback; what was typed is on disk."""
+        error = self._exception or RuntimeError("unknown")
+        words = (
+            f"tankcalc: stopped. {note_defect(self.options.state, error)} What was typed is kept."
+        )
+        self._exit_renderables.append(Text(words))
+        self._close_messages_no_wait()
 
     def _lost(self, number: int) -> None:
         """Leave when the link is lost; what was typed is on disk already."""

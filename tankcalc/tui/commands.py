@@ -70,11 +70,6 @@ MOVES = (
 """Keys that are no commands: (keys, what they do), for the help."""
 
 
-def by_id(name: str) -> Command:
-    """Return the command of that name."""
-    return next(command for command in COMMANDS if command.id == name)
-
-
 def footer(width: int, letters: bool = False) -> list[tuple[str, str]]:
     """Return (key, label) of the commands a footer of this width has room for, in order.
 

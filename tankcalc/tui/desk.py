@@ -10,7 +10,7 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from tankcalc.errors import TankcalcError
-from tankcalc.tui.fields import READINGS
+from tankcalc.tui.fields import READINGS, label_of
 
 if TYPE_CHECKING:
     from tankcalc.fluids.fluid import Fluid
@@ -179,7 +179,7 @@ def _answer(tank: Tank, fluid: Fluid, typed: Mapping[str, str]) -> Answer:
         return Answer(tank, fluid, why='Type a reading with its unit, such as "98.7 kPa".')
     readings, problems = readings_from_text(tank, typed)
     if problems:
-        names = ", ".join(problems)
+        names = ", ".join(label_of(name) for name in problems)
         return Answer(tank, fluid, typed, problems, why=f"No result: see {names}.")
     result = evaluate(tank, fluid, readings)
     refused = {n.reading: n.message for n in result.refusals if n.reading}

@@ -9,6 +9,7 @@ from pathlib import Path
 from tankcalc.text import clean
 from tankcalc.tui.desk import Desk
 from tankcalc.tui.draft import Draft, Journal, Orphan, orphans
+from tankcalc.tui.fields import label_of
 from tankcalc.tui.present import Line, wrapped
 
 
@@ -98,7 +99,7 @@ def draft_lines(drafts: Sequence[Draft], now_us: int, width: int) -> list[Line]:
         typed_at = datetime.fromtimestamp(draft.at_us / 1e6).astimezone().strftime("%H:%M %z")
         minutes = max((now_us - draft.at_us) // 60_000_000, 0)
         age = f"{minutes} min" if minutes < 120 else f"{minutes // 60} h"
-        held = "; ".join(f"{name} {clean(text)}" for name, text in draft.typed.items())
+        held = "; ".join(f"{label_of(name)} {clean(text)}" for name, text in draft.typed.items())
         words = f"Unfinished entry from {typed_at} ({age} ago), {draft.tank}: {held}"
         lines += wrapped(words, "", width)
     return lines

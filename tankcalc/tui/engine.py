@@ -11,6 +11,7 @@ from textual.message import Message
 
 from tankcalc.errors import TankcalcError
 from tankcalc.profiles.names import names_in
+from tankcalc.tui.defects import note_defect
 from tankcalc.tui.messages import EngineFailed, EngineReady, TanksRead
 
 if TYPE_CHECKING:
@@ -20,9 +21,13 @@ if TYPE_CHECKING:
 TANKS = "tanks"
 
 
-def start(folder: Path, is_demo: bool, post: Callable[[Message], object]) -> None:
+Post = Callable[[Message], object]
+
+
+def start(folder: Path, is_demo: bool, state: Path, post: Post) -> None:
     """Load everything in a thread of its own and post what came of it."""
-    Thread(target=_load, args=(folder, is_demo, post), name="tankcalc-engine", daemon=True).start()
+    work = (folder, is_demo, state, post)
+    Thread(target=load, args=work, name="tankcalc-engine", daemon=True).start()
 
 
 def tank_names(folder: Path) -> list[str]:
@@ -30,17 +35,16 @@ def tank_names(folder: Path) -> list[str]:
     return names_in(folder / TANKS)
 
 
-def _load(folder: Path, is_demo: bool, post: Callable[[Message], object]) -> None:
+def load(folder: Path, is_demo: bool, state: Path, post: Post) -> None:
+    """Load the site, then every tank, and post each when it is there."""
     try:
         site = _site(folder, is_demo)
+        post(EngineReady(site))
+        post(TanksRead(*_tanks(site)))
     except TankcalcError as error:
         post(EngineFailed(str(error)))
-        return
-    except OSError as error:
-        post(EngineFailed(f"{folder}: {error.strerror}"))
-        return
-    post(EngineReady(site))
-    post(TanksRead(*_tanks(site)))
+    except Exception as error:  # noqa: BLE001 - a thread's traceback would wreck the screen
+        post(EngineFailed(note_defect(state, error)))
 
 
 def _site(folder: Path, is_demo: bool) -> Site:

@@ -60,6 +60,11 @@ def by_name(name: str) -> Field:
     return next(field for field in FIELDS if field.name == name)
 
 
+def label_of(name: str) -> str:
+    """Return what a field is called on the screen; any other name as it is."""
+    return next((field.label for field in FIELDS if field.name == name), name)
+
+
 def fields_of(fitted: Collection[str]) -> list[Field]:
     """Return the fields of a tank with these transmitters, in the order they are shown."""
     return [field for field in FIELDS if not field.fitted or field.name in fitted]

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 from tankcalc.errors import StoreError
 from tankcalc.tui.defects import note_defect
 from tankcalc.tui.desk import Answer
-from tankcalc.tui.present import CAUTION
+from tankcalc.tui.present import CAUTION, units_word, wrapped
 
 if TYPE_CHECKING:
     from tankcalc.report import Row
@@ -57,23 +57,28 @@ class Front:
         app = self._app
         if app.book is None:
             name = "tankcalc" if app.desk.site is None else app.desk.site.name
-            return app.main.header(name, app.options.is_demo, [app.desk.units])
+            return app.main.header(name, app.options.is_demo, [units_word(app.desk.units)])
         from tankcalc.tui.log_lines import clock
 
         now = now_us()
-        right = [app.desk.units, app.book.shift(now).name, clock(now, app.book.zone)]
+        right = [units_word(app.desk.units), app.book.shift(now).name, clock(now, app.book.zone)]
         return app.main.header(app.book.site.name, app.options.is_demo, right)
 
     def show_log(self) -> None:
         """Show the entries of this shift as they were read last."""
         app = self._app
-        if app.book is None:
-            return app.main.log_pane.update([[(self.log_trouble, "")]], "LOG", CAUTION)
+        if app.book is None or self.log_trouble:
+            trouble = self.log_trouble
+            return app.main.log_pane.update(
+                lambda width: wrapped(trouble, "refused", width), 0, "LOG", CAUTION
+            )
         from tankcalc.tui.log_lines import log_rows, log_title
 
-        rows = log_rows(self._entries, app.book.zone, app.desk.units, app.size.width)
-        title = log_title(app.book.shift(now_us()), app.book.zone, len(rows))
-        return app.main.log_pane.update(rows, title, CAUTION)
+        entries, zone, units = self._entries, app.book.zone, app.desk.units
+        title = log_title(app.book.shift(now_us()), zone, len(entries))
+        return app.main.log_pane.update(
+            lambda width: log_rows(entries, zone, units, width), len(entries), title, CAUTION
+        )
 
     def read_log(self) -> None:
         """Read this shift's entries again; other consoles write to the log as well."""
@@ -89,8 +94,9 @@ class Front:
         if self._app.book is not None:
             try:
                 self._entries = await self._app.book.entries(self._app.book.shift(now_us()))
+                self.log_trouble = ""
             except StoreError as error:
-                self._app.main.say(f"The log cannot be read: {error}")
+                self.log_trouble = f"The log cannot be read: {error}"
         self.show_log()
 
     def _figures(self) -> Sequence[Row]:

@@ -16,7 +16,7 @@ from textual import events
 from textual.message import Message
 from textual.message_pump import MessagePump
 
-BURST_S = 0.1
+BURST_S = 0.05
 """A key that follows another one within this time waits for that one's effect."""
 PATIENCE_S = 0.5
 """Longest wait: what the key went to may be gone, and then nothing comes back from it."""

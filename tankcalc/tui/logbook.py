@@ -8,6 +8,8 @@ from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, TypeVar
 
+from tankcalc.errors import StoreError
+
 if TYPE_CHECKING:
     from zoneinfo import ZoneInfo
 
@@ -54,7 +56,13 @@ class LogBook:
 
     async def append(self, unsaved: Unsaved) -> Receipt:
         """Return the receipt of an entry once it is on disk; a StoreError where it is not."""
-        return await self._apart(lambda: self._store.append(unsaved.entry, unsaved.texts))
+        try:
+            return await self._apart(lambda: self._store.append(unsaved.entry, unsaved.texts))
+        except StoreError:
+            raise
+        except Exception as error:
+            # Whatever went wrong, the operator must hear that it is not saved.
+            raise StoreError(f"this program failed ({type(error).__name__}: {error}).") from error
 
     async def entries(self, shift: Shift) -> list[Row]:
         """Return the entries of a shift, newest last."""

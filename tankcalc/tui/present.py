@@ -12,10 +12,11 @@ from typing import TYPE_CHECKING
 from tankcalc.text import clean
 from tankcalc.tui.ascii import columns
 from tankcalc.tui.commands import footer
+from tankcalc.tui.fields import NOTE, label_of
 
 if TYPE_CHECKING:
     from tankcalc.report import Row
-    from tankcalc.result import Result, Status
+    from tankcalc.result import Status
     from tankcalc.tui.desk import Answer
 
 Span = tuple[str, str]
@@ -42,14 +43,19 @@ FIRST = (
 )
 """Figures shown first where there is not room for all."""
 
-LABEL_COLUMNS = 16
+LABEL_COLUMNS = 17
 
 
 def header(site: str, is_demo: bool, right: Sequence[str], width: int) -> Line:
     """Return the top row: the site, whether it is the demo, then units, shift and clock."""
     left = clean(site, 60) + ("  DEMO SITE" if is_demo else "")
-    end = "  ".join(part for part in right if part)
+    end = "  ".join(clean(part, 40) for part in right if part)
     return [(spread(f" {left}", f"{end} ", width), "bar")]
+
+
+def units_word(system: str) -> str:
+    """Return what the header calls a system of units."""
+    return "US" if system == "us" else system
 
 
 def result_title(answer: Answer) -> Line:
@@ -69,9 +75,8 @@ def result_block(rows: Sequence[Row], height: int, width: int) -> list[Line]:
 
 def figure(label: str, value: str, width: int) -> Line:
     """Return one figure with its label; where both do not fit, the label gives way."""
-    room = max(width - columns(value) - 1, 0)
-    words = clip(clean(label), min(room, max(LABEL_COLUMNS, room - 14)))
-    return [(f"{words} ".ljust(min(LABEL_COLUMNS, room + 1)), ""), (clean(value), "figure")]
+    room = min(max(width - columns(value), 0), LABEL_COLUMNS)
+    return [(clip(clean(label), room - 1).ljust(room), ""), (clean(value), "figure")]
 
 
 def messages(answer: Answer, said: str, hint: str, width: int, height: int) -> list[Line]:
@@ -101,7 +106,10 @@ def all_messages(answer: Answer, width: int) -> list[Line]:
 def _notices(answer: Answer) -> list[tuple[str, str, str]]:
     """Return (mark, words, style) of everything wrong or worth a look, the worst first."""
     if answer.result is None:
-        problems = [("X", f"{n}: {words}", "refused") for n, words in answer.problems.items()]
+        problems = [
+            ("X", f"{label_of(name)}: {words}", "refused")
+            for name, words in answer.problems.items()
+        ]
         return problems or ([("-", answer.why, "")] if answer.why else [])
     ordered = sorted(answer.result.warnings, key=lambda notice: not notice.refuses)
     return [
@@ -115,6 +123,13 @@ def wrapped(text: str, style: str, width: int) -> list[Line]:
     return [[(row, style)] for row in wrap(words, max(width, 10), subsequent_indent="  ")]
 
 
+def not_allowed(field: str) -> str:
+    """Return why something typed or pasted was not taken."""
+    if field == NOTE:
+        return "The note is full."
+    return f"{label_of(field)}: that is too long, or no part of a number with its unit."
+
+
 def foot(width: int, letters: bool) -> Line:
     """Return the row of keys."""
     line: Line = []
@@ -126,7 +141,7 @@ def foot(width: int, letters: bool) -> Line:
 def too_small(width: int, height: int, rows: Sequence[Row], answer: Answer) -> list[Line]:
     """Return what a terminal below 80 x 24 shows: what it needs, and the result as text."""
     lines: list[Line] = [[(f"need 80x24, have {width}x{height}", "key")]]
-    lines.extend([(f"{name}: {clean(text)}", "")] for name, text in answer.typed.items())
+    lines.extend([(f"{label_of(name)}: {clean(text)}", "")] for name, text in answer.typed.items())
     lines.append(result_title(answer))
     lines.extend(figure(row.label, row.value, width) for row in rows)
     return lines[:height]
@@ -154,24 +169,22 @@ def clip(text: str, width: int, more: str = "~") -> str:
     return (kept + more)[: max(width, 0)]
 
 
-def status_of(result: Result | None) -> str:
-    """Return the status in one word, for a row of a list."""
-    return "" if result is None else result.status.upper()
-
-
 def tank_line(name: str, mark: str, chosen: bool, focused: bool, width: int) -> Line:
     """Return one row of the list of tanks; ">" is where the keys go, "*" the tank in front."""
     lead = ">" if focused else "*" if chosen else " "
-    room = max(width - 3, 1)
+    room = max(width - 4, 1)
     shown = clip(clean(name), room)
-    text = f"{lead} {shown}{' ' * (room - columns(shown))}{mark}"
+    text = f"{lead} {shown}{' ' * (room - columns(shown))}{mark} "
     return [(text, "focus" if focused else "key" if chosen else "")]
 
 
 def field_label(label: str, focused: bool, wrong: bool) -> Line:
     """Return what stands before a field: where the keys go, its name, whether it is wrong."""
     lead = ">" if focused else " "
-    return [(f"{lead}{label:<12}", "key" if focused else ""), ("X " if wrong else "  ", "refused")]
+    return [
+        (f"{lead}{label:<12}", "key" if focused else ""),
+        ("X " if wrong else "  ", "refused" if wrong else ""),
+    ]
 
 
 def log_subject(
@@ -180,7 +193,7 @@ def log_subject(
     """Return what will be logged: tank, fluid, time, readings as typed, result and warnings."""
     fluid = "" if answer.fluid is None else answer.fluid.name
     lines: list[Line] = wrapped(f"{tank}, {fluid}, read {time}", "key", width)
-    typed = "; ".join(f"{name} {text}" for name, text in answer.typed.items())
+    typed = "; ".join(f"{label_of(name)} {text}" for name, text in answer.typed.items())
     lines += wrapped(f"Typed: {typed}", "", width)
     lines.append(result_title(answer))
     main = [f"{row.label} {row.value}" for row in rows if row.key in FIRST[:4]]

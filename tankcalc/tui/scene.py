@@ -79,9 +79,12 @@ def labels(tank: Tank, result: Result | None, system: units.System) -> list[Labe
 
 
 def _title(answer: Answer, tank: Tank, width: int) -> list[Line]:
-    fluid = answer.fluid.name if answer.fluid is not None else ""
     first = clip(clean(f"{tank.file or tank.name} {tank.service}"), width)
-    return [[(first, "title")], [(clip(clean(fluid), width), "")]]
+    fluid = answer.fluid
+    if fluid is None:
+        return [[(first, "title")], []]
+    other = "" if fluid.file == tank.contents else "! not usual: "
+    return [[(first, "title")], [(clip(clean(f"{other}{fluid.name}"), width), "")]]
 
 
 def _elevation(z: float, system: units.System) -> str:

@@ -65,6 +65,16 @@ def _is_utf8(name: str) -> bool:
     return name.lower().replace("-", "").replace("_", "") == "utf8"
 
 
+def let_go() -> None:
+    """Turn away from a terminal that is gone: what is left to be written has nowhere to go.
+
+    Python would end with status 120 where its last flush fails.
+    """
+    nowhere = os.open(os.devnull, os.O_RDWR)
+    for descriptor in (0, 1, 2):
+        os.dup2(nowhere, descriptor)
+
+
 class Decoder:
     """UTF-8 from the keyboard, where any byte may come.
 

@@ -14,6 +14,9 @@ from tankcalc.tui.widgets.lines import Lines
 
 T = TypeVar("T")
 
+OTHER_ROWS = 4
+"""Title, keys, and the most fields a dialog has."""
+
 
 class Dialog(ModalScreen[T], Generic[T]):
     """A box over the foot of the screen; what lies above it stays in sight."""
@@ -55,10 +58,14 @@ class Dialog(ModalScreen[T], Generic[T]):
         return []
 
     def say(self, lines: Sequence[Line]) -> None:
-        """Show these lines."""
+        """Show these lines, as many as leave room for what can be typed and the keys."""
+        room = max(self.size.height - OTHER_ROWS, 1)
+        shown = list(lines)
+        if len(shown) > room:
+            shown = [*shown[: room - 1], [(f"(+{len(shown) - room + 1} more lines)", "key")]]
         text = self.query_one("#text", Lines)
-        text.styles.height = len(lines)
-        text.show(lines)
+        text.styles.height = len(shown)
+        text.show(shown)
 
     def keys(self, words: str) -> None:
         """Show which keys act."""

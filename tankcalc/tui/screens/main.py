@@ -135,7 +135,7 @@ class MainScreen(Screen[None]):
 
     def on_not_allowed(self, message: NotAllowed) -> None:
         """Say why a key did nothing."""
-        self.say(f"{message.name}: that is too long, or no part of a number with its unit.")
+        self.say(present.not_allowed(message.name))
 
     def on_descendant_focus(self, _event: events.DescendantFocus) -> None:
         """Show which keys act now, and what the field takes."""

@@ -93,8 +93,8 @@ class SaveDialog(Dialog[Outcome]):
         self.action_save()
 
     def text(self) -> list[Line]:
-        """Return what will be logged, and what became of it."""
-        return [*self.subject(), *self._told]
+        """Return what became of it, and what will be logged."""
+        return [*self._told, *self.subject()]
 
     def action_save(self) -> None:
         """Send the entry; once it was sent, the very same one is sent again."""

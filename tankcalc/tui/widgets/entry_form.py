@@ -70,6 +70,8 @@ class EntryForm(ScrollableContainer, can_focus=False):
     def fit(self, fitted: Collection[str]) -> None:
         """Show the fields of a tank with these transmitters."""
         self._fields = fields_of(fitted)
+        # Where few are needed often, the row goes to the result.
+        self.set_class(sum(not field.later for field in self._fields) < 6, "-few")
         self._show_only(self.query(EntryField))
         self._label()
 
