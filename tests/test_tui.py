@@ -129,7 +129,7 @@ def test_the_result_follows_every_key_and_goes_when_the_text_is_not_valid(tmp_pa
         assert "6.505" not in console.text, "no figure outlives the text it came from"
         assert "▓" not in console.text
         assert "X 50 kP" in console.text
-        assert "p1 bottom: \"50 kP\"" in console.text
+        assert 'p1 bottom: "50 kP"' in console.text
         await console.press("a")
         await console.wait("6.505 m")
 

@@ -32,7 +32,7 @@ if TYPE_CHECKING:
     from tankcalc.units import System
 
 ENGINE_DELAY_S = 0.15
-"""Loading begins after the first paint; begun with it, it would delay it by as much again."""
+"""The rest begins after the first paint and the first key; it would delay them by as much."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -98,8 +98,8 @@ class ConsoleApp(App[None]):
         for number in (signal.SIGHUP, signal.SIGTERM):
             loop.add_signal_handler(number, self._lost, number)
 
-    async def on_ready(self) -> None:
-        """Look for what a dead console left, and begin the heavy part: the screen is up."""
+    def on_ready(self) -> None:
+        """Look for what a dead console left; the screen is up."""
         gc.freeze()
         gc.enable()
         self.drafts.open()
@@ -109,10 +109,13 @@ class ConsoleApp(App[None]):
             # What lies under a dialog must have been drawn once.
             self.main.call_after_refresh(self._offer_drafts)
         self.front.show_header()
+        self.set_timer(ENGINE_DELAY_S, self._load)
+
+    async def _load(self) -> None:
+        """Make the other fields, and load the calculation and the site."""
+        options = self.options
         await self.main.form.complete(self.desk.entry.fields)
-        folder, is_demo = self.options.folder, self.options.is_demo
-        state, post = self.options.state, self.post_message
-        self.set_timer(ENGINE_DELAY_S, lambda: engine.start(folder, is_demo, state, post))
+        engine.start(options.folder, options.is_demo, options.state, self.post_message)
 
     def on_unmount(self) -> None:
         """Let go of what is held on disk."""
