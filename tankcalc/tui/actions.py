@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING
 
+from tankcalc.text import clean
 from tankcalc.tui.fields import label_of
 from tankcalc.tui.help_text import help_lines
 from tankcalc.tui.log_lines import clock
@@ -97,7 +98,9 @@ class Actions:
 
     def details(self) -> None:
         """Show every figure and every warning in full."""
-        title = f"{self._desk.tank_name} IN FULL"
+        fluid = self._app.front.answer.fluid
+        of = "" if fluid is None else f": {clean(fluid.name)}"
+        title = f"{clean(self._desk.tank_name)} IN FULL{of}"
         self._app.push_screen(ReadScreen(title, self._in_full))
 
     def quit(self) -> None:
