@@ -174,6 +174,9 @@ def test_what_is_saved_and_what_is_not_both_outlive_a_dropped_link(
         terminal.wait("LOG THIS READING?")
         terminal.send("JD\tvalve shut\r\r\r")
         terminal.wait("SAVED, on disk: entry 1")
+        # An Enter too many has moved on to some field; without one a digit goes to the first.
+        terminal.send(b"\x1b")
+        terminal.wait("F1/?")
         terminal.send("98.7 mbar")
         terminal.wait("98.7 mbar")
         terminal.wait("RESULT *")
