@@ -65,7 +65,10 @@ class Table(DensityModel):
             return lambda t: np.interp(t, self.temperatures_k, self.densities_kg_m3)
         from scipy.interpolate import PchipInterpolator
 
-        return PchipInterpolator(self.temperatures_k, self.densities_kg_m3, extrapolate=False)
+        through_points: Callable[[FloatArray], FloatArray] = PchipInterpolator(
+            self.temperatures_k, self.densities_kg_m3, extrapolate=False
+        )
+        return through_points
 
     def density(self, temperature_k: FloatArray) -> FloatArray:
         """Return the density (kg/m3) at temperatures in K, an array of any shape."""
