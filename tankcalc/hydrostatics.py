@@ -57,7 +57,9 @@ def head_pa(
     weight = gravity_m_s2 * column.areal_mass(low_m, surface_m)
     if column.bulk_modulus_pa is None:
         return np.asarray(weight)
-    return np.asarray(-column.bulk_modulus_pa * np.log1p(-weight / column.bulk_modulus_pa))
+    with np.errstate(invalid="ignore", divide="ignore"):
+        # No column is as heavy as its modulus: the head then comes out as no number.
+        return np.asarray(-column.bulk_modulus_pa * np.log1p(-weight / column.bulk_modulus_pa))
 
 
 def surface_from_pressures(

@@ -112,6 +112,8 @@ class Transmitter:
         What its maker states; None where nothing is known.
     leg : FilledLeg, DryLeg, Purge or None
         What lies between the tap and the sensor; None: the diaphragm sits on the tank.
+    elevation_uncertainty_m : float or None
+        Standard uncertainty of the elevation, m, where it is stated.
     """
 
     tag: str
@@ -121,6 +123,7 @@ class Transmitter:
     range_pa: tuple[float, float] | None = None
     accuracy: Accuracy | None = None
     leg: Leg | None = None
+    elevation_uncertainty_m: float | None = None
 
     @property
     def sensor_elevation_m(self) -> float:

@@ -37,6 +37,9 @@ class Readings:
         Observed density of the liquid at tank temperature.
     sediment_water : float or None
         Sediment and water, as a fraction of volume.
+    signals : tuple of (str, str)
+        Tags of transmitters whose signal was not plainly good, with its band: "failed",
+        "uncertain" or "saturated". A failed one has no pressure above.
     """
 
     p1_pa: Number | None = None
@@ -54,6 +57,7 @@ class Readings:
     barometer_pa: float | None = None
     density_kg_m3: float | None = None
     sediment_water: float | None = None
+    signals: tuple[tuple[str, str], ...] = ()
 
     def given(self) -> frozenset[str]:
         """Names of the fields that hold something."""

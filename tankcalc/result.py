@@ -15,6 +15,9 @@ if TYPE_CHECKING:
 
 Status = Literal["good", "check", "refused"]
 
+Bounds = Mapping[str, tuple[float, float]]
+"""By JSON key: the least and the most that a figure can be."""
+
 
 @dataclass(frozen=True, slots=True)
 class Notice:
@@ -32,6 +35,8 @@ class Notice:
         True where no honest answer exists because of it.
     where : array of bool or None
         The readings it applies to, when the answer is for an array; None: all of them.
+    bounds : mapping of str to (float, float), or None
+        Between what the figures lie all the same, where physics says so of one reading.
     """
 
     code: str
@@ -39,6 +44,7 @@ class Notice:
     reading: str = ""
     refuses: bool = False
     where: npt.NDArray[np.bool_] | None = field(default=None, compare=False)
+    bounds: Bounds | None = field(default=None, compare=False)
 
 
 @dataclass(frozen=True, slots=True)
@@ -99,6 +105,11 @@ class Result:
         """The notices that refuse."""
         return tuple(notice for notice in self.warnings if notice.refuses)
 
+    @property
+    def bounds(self) -> Bounds:
+        """Between what the figures of a refused answer lie; empty where nothing bounds them."""
+        return next((n.bounds for n in self.warnings if n.bounds is not None), {})
+
 
 JSON_KEYS = (
     "tank",
@@ -135,5 +146,6 @@ def as_json(result: Result) -> dict[str, Any]:
     """Return the result of one reading as plain JSON data, keys as the interface names them."""
     data: dict[str, Any] = {key: getattr(result, key) for key in JSON_KEYS}
     data["expanded_uncertainty"] = dict(result.expanded_uncertainty)
+    data["bounds"] = {key: list(pair) for key, pair in result.bounds.items()}
     data["warnings"] = [{"code": n.code, "message": n.message} for n in result.warnings]
     return data

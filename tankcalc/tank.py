@@ -80,6 +80,8 @@ class Tank:
         Where an ullage reads zero, m above the datum; None: the vessel's highest inside point.
     vapour : Vapour or None
         Overrides the vapour of the fluid.
+    relief_pa : (float, float) or None
+        Vacuum and pressure, gauge, at which the vapour space is relieved, Pa.
     file : str
         Stem of the tank's file; what the command line calls the tank.
     version : str
@@ -94,6 +96,7 @@ class Tank:
     limits_m: Mapping[str, float] = field(default_factory=lambda: MappingProxyType({}))
     reference_height_m: float | None = None
     vapour: Vapour | None = None
+    relief_pa: tuple[float, float] | None = None
     shell: Shell | None = None
     floating_roof: FloatingRoof | None = None
     table: TableCertificate | None = None

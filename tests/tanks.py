@@ -50,9 +50,13 @@ def single(model: DensityModel | float, **changes: Any) -> Fluid:
 
 
 def stacked(*layers: tuple[DensityModel | float, float | None]) -> Fluid:
-    """Layers from the bottom up, each with the elevation of its top (m)."""
+    """Layers from the bottom up, each with the elevation of its top (m); 1000 kg/m3 is water."""
     made = [
-        Layer(f"layer {k}", Constant(m) if isinstance(m, float) else m, top)
+        Layer(
+            "water" if m == 1000.0 else f"layer {k}",
+            Constant(m) if isinstance(m, float) else m,
+            top,
+        )
         for k, (m, top) in enumerate(layers)
     ]
     return Fluid("layers", tuple(made))

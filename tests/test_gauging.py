@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -16,6 +17,7 @@ from tankcalc.fluids.vapour import Vapour
 from tankcalc.gauging import evaluate
 from tankcalc.geometry import FlatEnd, sphere, strapped, vertical_cylinder
 from tankcalc.instruments import (
+    Accuracy,
     DifferentialTransmitter,
     DryLeg,
     FilledLeg,
@@ -48,6 +50,82 @@ def test_three_transmitter_check_set() -> None:
     assert found.p2_pa == pytest.approx(80_642.175, abs=2e-3)
     assert found.mass_kg == pytest.approx(3_204_424.5, rel=3e-7)
     assert found.mass_kg - 133_517.7 == pytest.approx(3_070_906.8, rel=3e-7)
+
+
+def test_two_taps_measure_the_density() -> None:
+    exact = {t: Transmitter(t, z, "gauge", accuracy=Accuracy(fixed=30.0))
+             for t, z in (("p1", 0.5), ("p2", 2.5), ("p3", 15.0))}  # fmt: skip
+    found = evaluate(
+        upright(transmitters=exact),
+        single(840.0, vapour=HEAVY_VAPOUR),
+        Readings(p1_pa=97_295.631, p2_pa=80_642.175, p3_pa=1500.0),
+    )
+    assert found.density_kg_m3 == pytest.approx(850.0, abs=1e-4)
+    assert found.level_m == pytest.approx(12.0, abs=2e-6)
+    assert codes(found) == {"density_differs"}
+    assert found.basis == (
+        "p1, p2 and p3 fix the surface, the mean density and the pressure above the liquid"
+    )
+
+
+def test_a_dip_beside_the_pressure_measures_the_mean_density_and_the_mass() -> None:
+    found = evaluate(
+        blanketed(),
+        single(845.0, vapour=HEAVY_VAPOUR),
+        Readings(p1_pa=97_295.631, p3_pa=1500.0, level_m=12.0),
+    )
+    assert found.density_kg_m3 == pytest.approx(850.0, abs=1e-4)
+    assert found.level_m == 12.0
+    assert found.mass_kg == pytest.approx(3_204_424.5, rel=3e-7)
+
+
+def test_water_between_the_taps_is_pointed_at_as_a_mixture() -> None:
+    # 0.4 m of water and 1.6 m of product between the taps look like 880 kg/m3.
+    fluid = stacked((1000.0, 0.9), (850.0, None))
+    true = evaluate(blanketed(), fluid, Readings(level_m=12.0, water_level_m=0.9, p3_pa=0.0))
+    read = Readings(p1_pa=true.p1_pa, p2_pa=true.p2_pa, p3_pa=0.0)
+    found = evaluate(blanketed(), single(850.0), read)
+    assert found.density_kg_m3 == pytest.approx(880.0, abs=0.5)
+    assert "0.40 m of free water above p1" in found.warnings[0].message
+    probed = evaluate(blanketed(), fluid, replace(read, water_level_m=0.9))
+    assert probed.level_m == pytest.approx(12.0, abs=1e-6)
+    assert probed.layers[1].density_kg_m3 == pytest.approx(850.0, abs=1e-3)
+
+
+def test_an_uncovered_middle_tap_says_nothing_of_the_density() -> None:
+    true = evaluate(blanketed(), single(850.0), Readings(level_m=2.0, p3_pa=0.0))
+    read = Readings(p1_pa=true.p1_pa, p2_pa=true.p2_pa, p3_pa=0.0)
+    found = evaluate(blanketed(), single(840.0), read)
+    assert codes(found) == {"p2_uncovered"}
+    assert found.mass_kg == pytest.approx(true.mass_kg, rel=0.005)
+
+
+def test_a_dip_under_an_unread_blanket_tells_the_blanket() -> None:
+    true = evaluate(blanketed(), single(850.0), Readings(level_m=9.0, p3_pa=1500.0))
+    found = evaluate(blanketed(), single(850.0), Readings(level_m=9.0, p1_pa=true.p1_pa))
+    assert found.p3_pa == pytest.approx(1500.0, abs=1e-6)
+    assert "the pressure above the liquid" in found.basis
+
+
+def test_an_unread_blanket_is_bounded_by_its_relief_valves() -> None:
+    tank = blanketed(relief_pa=(-500.0, 2000.0))
+    true = evaluate(tank, single(850.0), Readings(level_m=9.0, p3_pa=1500.0))
+    found = evaluate(tank, single(850.0), Readings(p1_pa=true.p1_pa))
+    assert found.status == "refused"
+    low, high = found.bounds["level_m"]
+    assert low < 9.0 < high
+    assert high - low == pytest.approx(2500.0 / (9.81 * 848.8), rel=1e-3)
+
+
+def test_more_readings_than_unknowns_are_weighted() -> None:
+    true = evaluate(blanketed(), single(850.0), Readings(level_m=12.0, p3_pa=1500.0))
+    read = Readings(
+        level_m=12.002, p1_pa=true.p1_pa, p2_pa=true.p2_pa + 20.0, p3_pa=1500.0, density_kg_m3=850.0
+    )
+    found = evaluate(blanketed(), single(800.0), read)
+    assert "weighted by their uncertainties (2 to spare)" in found.basis
+    assert 12.0 < found.level_m < 12.002
+    assert codes(found) == set()
 
 
 def test_the_same_column_read_back_from_its_level() -> None:
@@ -214,6 +292,24 @@ def test_a_fitted_but_unread_vapour_pressure_is_not_guessed() -> None:
     assert "0.120 m of level" in found.warnings[0].message
 
 
+def test_a_vapour_pressure_below_vacuum_is_refused() -> None:
+    found = evaluate(blanketed(), single(850.0), Readings(level_m=3.0, p3_pa=-2e5))
+    assert codes(found) == {"below_vacuum"}
+
+
+def test_a_hopeless_pressure_under_a_read_blanket_is_above_the_top_not_unread() -> None:
+    found = evaluate(blanketed(), single(850.0), Readings(p1_pa=9e5, p3_pa=1500.0))
+    assert codes(found) == {"above_top"}
+
+
+def test_two_taps_find_a_liquid_so_heavy_that_one_alone_would_overflow() -> None:
+    true = evaluate(blanketed(), single(1000.0), Readings(level_m=14.5, p3_pa=1500.0))
+    read = Readings(p1_pa=true.p1_pa, p3_pa=1500.0)
+    assert codes(evaluate(blanketed(), single(800.0), read)) == {"above_top"}
+    both = replace(read, p2_pa=true.p2_pa)
+    assert evaluate(blanketed(), single(800.0), both).level_m == pytest.approx(14.5, abs=1e-6)
+
+
 def test_p3_under_liquid_is_refused() -> None:
     tank = upright(transmitters=transmitters(p1=0.5, p3=10.0))
     found = evaluate(tank, single(850.0), Readings(p1_pa=100_000.0, p3_pa=1000.0))
@@ -272,11 +368,11 @@ def test_an_inverted_density_is_pointed_at() -> None:
 
 def test_readings_that_are_not_needed_are_compared_with_the_answer() -> None:
     fluid = single(850.0, vapour=HEAVY_VAPOUR)
-    readings = Readings(p1_pa=97_295.631, p2_pa=80_642.0, p3_pa=1500.0)
+    readings = Readings(p1_pa=97_295.631, p2_pa=80_642.0, p3_pa=1500.0, level_m=12.0)
     assert codes(evaluate(blanketed(), fluid, readings)) == set()
-    readings = Readings(p1_pa=97_295.631, p2_pa=78_000.0, p3_pa=1500.0)
-    assert codes(evaluate(blanketed(), fluid, readings)) == {"disagreement"}
-    readings = Readings(level_m=11.0, p1_pa=97_295.631, p3_pa=1500.0)
+    readings = Readings(p1_pa=97_295.631, p2_pa=78_000.0, p3_pa=1500.0, level_m=12.0)
+    assert "disagreement" in codes(evaluate(blanketed(), fluid, readings))
+    readings = Readings(volume_m3=3000.0, p1_pa=97_295.631, p3_pa=1500.0)
     assert codes(evaluate(blanketed(), fluid, readings)) == {"disagreement"}
 
 
@@ -364,6 +460,136 @@ def test_any_pressures_give_an_answer_or_a_refusal_never_a_hole(p1: float, p3: f
 
 def test_json_has_every_key_of_the_interface() -> None:
     data = as_json(evaluate(upright(), single(850.0), Readings(level_m=5.0)))
-    assert set(JSON_KEYS) | {"expanded_uncertainty", "warnings"} == set(data)
+    assert set(JSON_KEYS) | {"expanded_uncertainty", "bounds", "warnings"} == set(data)
     assert data["level_m"] == 5.0
     assert data["ctl"] is None
+
+
+def test_weather_is_level_where_a_vent_is_blocked() -> None:
+    # 30 hPa of barometer are 360 mm at 850 kg/m3.
+    tank = upright(transmitters={"p1": Transmitter("p1", 0.5, "absolute")})
+    read = Readings(p1_pa=190_000.0)
+    levels = [
+        evaluate(tank, single(850.0), replace(read, barometer_pa=b)).level_m
+        for b in (101_325.0, 104_325.0)
+    ]
+    assert levels[0] - levels[1] == pytest.approx(0.360, abs=5e-4)
+
+
+def test_a_gauge_reading_taken_for_absolute_is_twelve_metres_of_gas_oil() -> None:
+    tall = upright(vessel=vertical_cylinder([(40.0, 20.0)], FlatEnd(), FlatEnd()))
+    gauge = evaluate(tall, single(845.0), Readings(p1_pa=80_000.0))
+    slipped = evaluate(tall, single(845.0), Readings(p1_pa=80_000.0 + 101_325.0))
+    assert slipped.level_m - gauge.level_m == pytest.approx(12.2, abs=0.05)
+
+
+def test_vapour_of_propane_is_stock() -> None:
+    # Propane at 8.36 bar absolute and 20 degC with Z = 0.84: 18.0 kg/m3.
+    tank = upright(
+        vessel=sphere(12.0),
+        transmitters={"p3": Transmitter("p3", 12.0, "absolute")},
+        vapour=Vapour(molar_mass_kg_mol=0.044096, compressibility=0.84),
+    )
+    found = evaluate(
+        tank, single(500.0), Readings(level_m=6.0, p3_pa=8.36e5, temperatures=((None, 293.15),))
+    )
+    assert found.vapour_mass_kg / (0.5 * 904.7787) == pytest.approx(18.0, abs=0.05)
+
+
+def test_a_sampled_column_gives_its_pressure_and_its_level() -> None:
+    # 860, 852 and 846 kg/m3 at 1, 5 and 9 m: 79 421.76 Pa at 0.5 m under 10 m, by hand.
+    tank = upright(surroundings=around(air_density_kg_m3=0.0))
+    found = evaluate(tank, single(SAMPLED), Readings(p1_pa=79_421.76))
+    assert found.level_m == pytest.approx(10.0, abs=2e-6)
+    top_only = evaluate(tank, single(846.0), Readings(p1_pa=79_421.76))
+    assert top_only.level_m == pytest.approx(10.0697, abs=5e-5)
+
+
+def test_elements_in_the_vapour_do_not_count() -> None:
+    oil = single(Expansion(845.0, 288.15, 8.3e-4))
+    hung = Readings(p1_pa=60_000.0, temperatures=((1.0, 293.15), (4.0, 293.15), (12.0, 333.15)))
+    found = evaluate(upright(), oil, hung)
+    assert codes(found) == {"element_in_vapour"}
+    plain = evaluate(upright(), oil, replace(hung, temperatures=((None, 293.15),)))
+    assert found.level_m == pytest.approx(plain.level_m, abs=1e-9)
+
+
+def test_a_failed_signal_makes_no_level_and_is_said() -> None:
+    failed = Readings(signals=(("p1", "failed"),))
+    found = evaluate(upright(), single(850.0), failed)
+    assert found.status == "refused"
+    assert codes(found) == {"signal_failed", "not_enough"}
+    dipped = evaluate(upright(), single(850.0), replace(failed, level_m=5.0))
+    assert dipped.level_m == 5.0
+    assert codes(dipped) == {"signal_failed"}
+
+
+def test_readings_that_mean_an_impossible_density_are_refused() -> None:
+    slipped = Readings(level_m=12.0, p1_pa=14.0 * 97_295.631, p3_pa=1500.0)
+    found = evaluate(blanketed(), single(850.0), slipped)
+    assert found.status == "refused"
+    assert "density_impossible" in codes(found)
+
+
+def test_a_water_dip_never_takes_a_product_layer_away() -> None:
+    fluid = stacked((1200.0, 2.0), (800.0, None))
+    plain = evaluate(upright(), fluid, Readings(level_m=5.0))
+    dry = evaluate(upright(), fluid, Readings(level_m=5.0, water_level_m=0.0))
+    assert dry.mass_kg == pytest.approx(plain.mass_kg)
+    wet = evaluate(upright(), fluid, Readings(level_m=5.0, water_level_m=0.1))
+    assert [layer.name for layer in wet.layers] == ["free water", "layer 0", "layer 1"]
+
+
+def test_dp_and_a_bottom_pressure_tell_the_pressure_between_them() -> None:
+    dp = DifferentialTransmitter(0.0, Side(1.0, 960.0), Side(14.0, 960.0))
+    tank = upright(dp=dp)
+    true = evaluate(blanketed(dp=dp), single(850.0), Readings(level_m=9.0, p3_pa=20_000.0))
+    alone = evaluate(tank, single(850.0), Readings(p1_pa=true.p1_pa))
+    assert codes(alone) == {"p3_not_read"}
+    both = evaluate(tank, single(850.0), Readings(p1_pa=true.p1_pa, dp_pa=true.dp_pa))
+    assert both.level_m == pytest.approx(9.0, abs=1e-6)
+    assert "the pressure above the liquid" in both.basis
+
+
+def test_a_vapour_whose_density_follows_an_unread_pressure_is_not_guessed() -> None:
+    dp = DifferentialTransmitter(0.0, Side(0.3), Side(11.9))
+    tank = upright(
+        vessel=sphere(12.0),
+        transmitters=transmitters(p3=12.0),
+        dp=dp,
+        vapour=Vapour(molar_mass_kg_mol=0.0441, compressibility=0.86),
+    )
+    assert evaluate(tank, single(510.0), Readings(dp_pa=28_500.0)).status == "refused"
+    read = evaluate(tank, single(510.0), Readings(dp_pa=28_500.0, p3_pa=7e5))
+    assert read.status == "good" or codes(read) == {"temperature_assumed"}
+
+
+def test_p3_under_liquid_is_said_and_its_head_allowed_for() -> None:
+    tank = upright(transmitters=transmitters(p1=0.5, p3=6.5))
+    found = evaluate(tank, single(850.0), Readings(level_m=6.7, p3_pa=10_000.0))
+    assert codes(found) == {"p3_covered"}
+    assert found.p3_pa == pytest.approx(10_000.0, abs=1e-6)
+    assert found.p1_pa - found.p3_pa == pytest.approx(9.81 * (850.0 - 1.2) * 6.0, abs=1e-6)
+
+
+def test_an_extended_density_is_used_where_it_still_is_one() -> None:
+    steep = single(Samples((1.0, 2.0), (900.0, 700.0), "extend"))
+    low = evaluate(upright(), steep, Readings(p1_pa=15_000.0))
+    assert low.status == "good"
+    assert codes(evaluate(upright(), steep, Readings(level_m=7.0))) == {"density_run_out"}
+    assert codes(evaluate(upright(), steep, Readings(mass_kg=28_000.0))) == {"density_run_out"}
+
+
+def test_a_gas_leg_of_unknown_temperature_costs_only_its_own_reading() -> None:
+    leg = DryLeg(8.0, molar_mass_kg_mol=0.0581)
+    taps = transmitters(p1=0.5) | {"p2": Transmitter("p2", 2.5, "gauge", leg=leg)}
+    tank = upright(transmitters=taps, surroundings=around(air_temperature_k=None))
+    found = evaluate(tank, single(850.0), Readings(level_m=5.0))
+    assert found.p2_pa is None
+    assert found.p1_pa == pytest.approx(9.81 * 848.8 * 4.5)
+    assert codes(found) == {"leg_unknown"}
+
+
+def test_a_mass_beside_a_level_is_compared() -> None:
+    found = evaluate(upright(), single(850.0), Readings(level_m=8.0, mass_kg=1000.0))
+    assert codes(found) == {"disagreement"}

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 import numpy.typing as npt
@@ -77,20 +77,34 @@ class Column:
                     layer.append(index)
             bottom = top
         inner = np.asarray(edges[1:], dtype=float)
-        column = cls(
-            inner,
-            np.asarray(at),
-            np.asarray(rho),
-            np.asarray(slope),
-            np.asarray(layer, dtype=np.intp),
-            np.zeros(len(inner)),
-            bulk_modulus_pa,
+        return cls._summed(
+            cls(
+                inner,
+                np.asarray(at),
+                np.asarray(rho),
+                np.asarray(slope),
+                np.asarray(layer, dtype=np.intp),
+                np.zeros(len(inner)),
+                bulk_modulus_pa,
+            )
         )
-        if len(inner) > 1:
-            pieces_inside = np.arange(1, len(inner))
-            steps = column._within(pieces_inside, inner[:-1], inner[1:])
-            column.to_edge[1:] = np.cumsum(steps)
-        return column
+
+    @staticmethod
+    def _summed(column: Column) -> Column:
+        """Return the column with its integral to every edge."""
+        edges = column.edges_m
+        to_edge = np.zeros(len(edges))
+        if len(edges) > 1:
+            steps = column._within(np.arange(1, len(edges)), edges[:-1], edges[1:])
+            to_edge[1:] = np.cumsum(steps)
+        return replace(column, to_edge=to_edge)
+
+    def scaled(self, factors: Sequence[float]) -> Column:
+        """Return the column with the density of each layer times its factor (zero: no mass)."""
+        factor = np.asarray(factors, dtype=float)[self.layer]
+        return self._summed(
+            replace(self, density_kg_m3=self.density_kg_m3 * factor, slope=self.slope * factor)
+        )
 
     def _within(self, piece: IntArray, low_m: FloatArray, high_m: FloatArray) -> FloatArray:
         """Return the integral of rho (kg/m2) between elevations of one piece."""
@@ -146,14 +160,18 @@ class Column:
         that is stable for small slopes.
         """
         less = np.asarray(less_kg_m3, dtype=float)
+        if less.size and not any(less.strides):
+            less = less.reshape(-1)[0]  # one density, broadcast over all rows
         target = np.asarray(areal_mass, dtype=float) + self.areal_mass_to(from_m) - less * from_m
         if target.size <= BLOCK:
             return self._height(target, less)
-        less = np.broadcast_to(less, target.shape) if less.ndim else less
+        displaced = np.broadcast_to(less, target.shape).ravel() if less.ndim else None
         flat, heights = target.ravel(), np.empty(target.size)
         for start in range(0, flat.size, BLOCK):
             block = slice(start, start + BLOCK)
-            heights[block] = self._height(flat[block], less.ravel()[block] if less.ndim else less)
+            heights[block] = self._height(
+                flat[block], less if displaced is None else displaced[block]
+            )
         return heights.reshape(target.shape)
 
     def _height(self, target: FloatArray, less: FloatArray) -> FloatArray:
@@ -172,9 +190,10 @@ class Column:
             rest = target - (self.to_edge[low] - less * start)
         slope = self.slope[k]
         rho = self.density_kg_m3[k] + slope * (start - self.at_m[k]) - less
-        with np.errstate(invalid="ignore"):
+        with np.errstate(invalid="ignore", divide="ignore"):
             root = np.sqrt(rho * rho + 2.0 * slope * rest)
-        return np.asarray(start + 2.0 * rest / (rho + root))
+            height = start + 2.0 * rest / (rho + root)
+        return np.asarray(np.where(np.isfinite(height), height, np.nan))
 
     def rising_density_below(self, surface_m: float, bottom_m: float) -> float | None:
         """Return the lowest elevation (m) at which density rises with height, or None."""

@@ -14,12 +14,14 @@ if TYPE_CHECKING:
 class Layer:
     """One liquid of a stack: its density model and the elevation of its top.
 
-    ``top_m`` is None for the uppermost layer, which reaches the surface.
+    ``top_m`` is None for the uppermost layer, which reaches the surface; the standard
+    uncertainty of the density is None where it is not stated.
     """
 
     name: str
     model: DensityModel
     top_m: float | None = None
+    uncertainty_kg_m3: float | None = None
 
 
 @dataclass(frozen=True, slots=True)

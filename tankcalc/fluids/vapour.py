@@ -18,8 +18,11 @@ class Vapour:
         pressure and the temperature.
     compressibility : float
         Compressibility factor Z of that gas.
+    uncertainty_kg_m3 : float or None
+        Standard uncertainty of the density, where it is stated.
     """
 
     density_kg_m3: float | None = None
     molar_mass_kg_mol: float | None = None
     compressibility: float = 1.0
+    uncertainty_kg_m3: float | None = None

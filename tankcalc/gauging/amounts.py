@@ -9,24 +9,25 @@ from tankcalc.constants import (
     CONVENTIONAL_WEIGHT_DENSITY_KG_M3,
 )
 from tankcalc.gauging.case import Case, FloatArray
+from tankcalc.gauging.model import Model, State
 from tankcalc.result import LayerShare
 
 
-def amounts(case: Case, level_m: FloatArray) -> dict[str, FloatArray | None]:
+def amounts(model: Model, state: State) -> dict[str, FloatArray | None]:
     """Return the figures of a result for surfaces inside the vessel, by their JSON names.
 
     Parameters
     ----------
-    case : Case
+    model : Model
         Tank, column and readings.
-    level_m : array of any shape
-        Surface elevations, m, inside the vessel.
+    state : State
+        Surfaces inside the vessel, densities and vapour pressures; arrays of any shape.
     """
+    case, level_m = model.case, state.surface_m
     vessel, tank = case.tank.vessel, case.tank
-    volume, moment = vessel.volume_and_moment(level_m)
-    mass = case.filling.mass_from(level_m, volume, moment)
-    water_volume, water_mass = _free_water(case, level_m)
-    product_volume, product_mass = volume - water_volume, mass - water_mass
+    volume, product_mass, water_mass = model.contents(state)
+    water_volume = _free_water(case, level_m)
+    product_volume, mass = volume - water_volume, product_mass + water_mass
     has_water = case.liquid.water_top_m is not None
     vapour = tank.vapour or case.fluid.vapour
     empty = vessel.capacity - volume
@@ -40,9 +41,9 @@ def amounts(case: Case, level_m: FloatArray) -> dict[str, FloatArray | None]:
         "product_volume_m3": product_volume,
         "mass_kg": mass,
         "product_mass_kg": product_mass,
-        "vapour_mass_kg": case.vapour_space.density_kg_m3 * empty if vapour else None,
+        "vapour_mass_kg": model.vapour_density(state.vapour_pa) * empty if vapour else None,
         "weight_in_air_kg": weight_in_air(product_mass, product_volume),
-        "density_kg_m3": _mean_density(case, level_m, mass, volume),
+        "density_kg_m3": _mean_density(model, state, mass, volume),
         "room_m3": _volume_to(case, "maximum_working", volume),
         "pumpable_m3": _volume_above(case, "minimum_working", volume),
     }
@@ -68,17 +69,14 @@ def weight_in_air(mass_kg: FloatArray, volume_m3: FloatArray) -> FloatArray:
     return np.asarray((mass_kg - buoyancy) / weights)
 
 
-def _free_water(case: Case, level_m: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Return volume (m3) and mass (kg) of the free water below surfaces (m)."""
+def _free_water(case: Case, level_m: FloatArray) -> FloatArray:
+    """Return the volume (m3) of the free water below surfaces (m)."""
     top = case.liquid.water_top_m
     if top is None:
-        return np.zeros(level_m.shape), np.zeros(level_m.shape)
+        return np.zeros(level_m.shape)
     vessel = case.tank.vessel
     upper = np.minimum(level_m, min(max(top, vessel.z_min), vessel.z_max))
-    volume, moment = vessel.volume_and_moment(upper)
-    if case.column.bulk_modulus_pa is None:
-        return volume, case.filling.mass_from(upper, volume, moment)
-    return volume, case.filling.mass(upper)
+    return np.asarray(vessel.volume(upper))
 
 
 def _water_level(case: Case, level_m: FloatArray) -> FloatArray:
@@ -89,12 +87,13 @@ def _water_level(case: Case, level_m: FloatArray) -> FloatArray:
 
 
 def _mean_density(
-    case: Case, level_m: FloatArray, mass_kg: FloatArray, volume_m3: FloatArray
+    model: Model, state: State, mass_kg: FloatArray, volume_m3: FloatArray
 ) -> FloatArray:
     """Return mass / volume (kg/m3); in an empty vessel the density at its bottom."""
-    at_bottom = case.column.density(np.full(level_m.shape, case.tank.vessel.z_min))
+    bottom = np.full(state.surface_m.shape, model.case.tank.vessel.z_min)
     with np.errstate(divide="ignore", invalid="ignore"):
-        return np.where(volume_m3 > 0.0, mass_kg / volume_m3, at_bottom)
+        mean = mass_kg / volume_m3
+    return np.where(volume_m3 > 0.0, mean, model.density(bottom, state))
 
 
 def _volume_to(case: Case, limit: str, volume_m3: FloatArray) -> FloatArray | None:
@@ -109,15 +108,18 @@ def _volume_above(case: Case, limit: str, volume_m3: FloatArray) -> FloatArray |
     return None if at is None else volume_m3 - np.asarray(case.tank.vessel.volume(at))
 
 
-def layer_shares(case: Case, level_m: float) -> tuple[LayerShare, ...]:
-    """Return the layers as they lie below one surface (m), from the bottom up."""
+def layer_shares(model: Model, state: State) -> tuple[LayerShare, ...]:
+    """Return the layers as they lie below the surface of a state of one row, from the bottom up."""
+    case, level = model.case, float(state.surface_m)
     vessel, shares, bottom = case.tank.vessel, [], case.tank.vessel.z_min
-    for layer in case.liquid.layers:
-        top = level_m if layer.top_m is None else min(layer.top_m, level_m)
+    for index, layer in enumerate(case.liquid.layers):
+        top = level if layer.top_m is None else min(layer.top_m, level)
         if top <= bottom:
             continue
         volume = float(vessel.volume(top)) - float(vessel.volume(bottom))
-        areal = float(case.column.areal_mass(bottom, top))
-        shares.append(LayerShare(layer.name, bottom, top, areal / (top - bottom), volume))
+        is_water = index == 0 and case.liquid.water_top_m is not None
+        factor = 1.0 if is_water else float(state.factor)
+        density = factor * float(case.column.areal_mass(bottom, top)) / (top - bottom)
+        shares.append(LayerShare(layer.name, bottom, top, density, volume))
         bottom = top
     return tuple(shares)

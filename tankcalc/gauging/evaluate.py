@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -9,9 +10,11 @@ import numpy as np
 from tankcalc.errors import InputError, RangeError
 from tankcalc.fluids.fluid import Fluid
 from tankcalc.gauging.amounts import amounts, layer_shares
-from tankcalc.gauging.case import BoolArray, Case, FloatArray
+from tankcalc.gauging.case import BoolArray, FloatArray
 from tankcalc.gauging.doubts import doubts
-from tankcalc.gauging.surface import Surface, find_surface
+from tankcalc.gauging.model import Model
+from tankcalc.gauging.solve import solve
+from tankcalc.gauging.state import Found
 from tankcalc.readings import Readings
 from tankcalc.result import Notice, Result, Status
 from tankcalc.tank import Tank
@@ -49,34 +52,39 @@ def evaluate(tank: Tank, fluid: Fluid, readings: Readings) -> Result:
     integral of density from the tap to the surface. The pure function of its arguments: no
     clock, no file, no environment.
     """
-    try:
-        case = Case.of(tank, fluid, readings)
-    except (RangeError, InputError) as error:
-        notice = Notice("density_refused", str(error), "temperature", refuses=True)
-        return Result(tank.name, fluid.name, "nothing", "refused", (notice,))
     if tank.floating_roof is not None:
         return Result(tank.name, fluid.name, "nothing", "refused", (_FLOATING_ROOF,))
-    surface = find_surface(case)
-    notices = [*case.liquid.notices, *surface.notices]
-    refused = np.isnan(surface.level_m)
+    try:
+        model, found = solve(tank, fluid, readings)
+    except (RangeError, InputError) as error:
+        notice = Notice("not_computable", str(error), "temperature", refuses=True)
+        return Result(tank.name, fluid.name, "nothing", "refused", (notice,))
+    notices = [*model.case.liquid.notices, *found.notices]
+    refused = np.isnan(found.state.surface_m)
     if not np.all(refused):
-        held = np.where(refused, tank.vessel.z_min, surface.level_m)
-        more, water_above = doubts(case, surface, held, refused)
+        held = np.where(refused, tank.vessel.z_min, found.state.surface_m)
+        state = replace(found.state, surface_m=held)
+        more, water_above = doubts(model, found, state, refused)
         notices.extend(more)
         refused = refused | water_above
     if np.all(refused):
-        return Result(tank.name, fluid.name, surface.basis, "refused", tuple(notices))
-    return _result(case, surface, refused, tuple(notices))
+        return Result(tank.name, fluid.name, found.basis, "refused", tuple(notices))
+    return _result(model, found, refused, tuple(notices))
 
 
-def _result(
-    case: Case, surface: Surface, refused: BoolArray, notices: tuple[Notice, ...]
-) -> Result:
+def _result(model: Model, found: Found, refused: BoolArray, notices: tuple[Notice, ...]) -> Result:
     """Return the result of a case in which at least one row has an answer."""
-    level = np.where(refused, case.tank.vessel.z_min, surface.level_m)
-    figures: dict[str, FloatArray | None] = amounts(case, level)
+    case = model.case
+    level = np.where(refused, case.tank.vessel.z_min, found.state.surface_m)
+    state = replace(found.state, surface_m=level)
+    figures: dict[str, FloatArray | None] = amounts(model, state)
+    more: list[Notice] = []
     for tag in case.fitted():
-        figures[f"{tag}_pa"] = case.expected(tag, level)
+        try:
+            figures[f"{tag}_pa"] = model.expected(tag, state)
+        except InputError as error:
+            more.append(Notice("leg_unknown", f"What {tag} should read is not known: {error}", tag))
+    notices = (*notices, *more)
     single = level.ndim == 0
     shown: dict[str, Any] = {
         name: None if value is None else _plain(value, refused) for name, value in figures.items()
@@ -85,10 +93,10 @@ def _result(
     return Result(
         tank=case.tank.name,
         fluid=case.fluid.name,
-        basis=surface.basis,
+        basis=found.basis,
         status=status,
         warnings=notices,
-        layers=layer_shares(case, float(level)) if single else (),
+        layers=layer_shares(model, state) if single else (),
         refused=None if single else refused,
         **shown,
     )

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from tankcalc.constants import ICE_POINT_K
 from tankcalc.fluids.column import Column, column_of_layers
@@ -64,21 +64,26 @@ def liquid_in(tank: Tank, fluid: Fluid, readings: Readings) -> Liquid:
     return Liquid(
         layers,
         column,
-        free_water_top(layers, readings.water_level_m),
+        free_water_top(layers),
         temperatures.values_k[-1] if temperatures else None,
         notices,
     )
 
 
-def free_water_top(layers: tuple[Layer, ...], read_m: float | None) -> float | None:
+def free_water_top(layers: tuple[Layer, ...]) -> float | None:
     """Return the top of the free water (m), or None where there is none.
 
-    The lowest of several layers is free water when its model is that of water, or when its top
-    was read as the water level.
+    The lowest of several layers is free water when its model is that of water, or when its name
+    says so (salt water, produced water).
     """
+    return layers[0].top_m if _has_water(layers) else None
+
+
+def _has_water(layers: tuple[Layer, ...]) -> bool:
+    """Return whether the lowest of several layers is free water."""
     if len(layers) < 2:
-        return None
-    return layers[0].top_m if read_m is not None or layers[0].model.kind == Water.kind else None
+        return False
+    return layers[0].model.kind == Water.kind or "water" in layers[0].name.lower()
 
 
 def _with_density(layers: tuple[Layer, ...], observed_kg_m3: float | None) -> tuple[Layer, ...]:
@@ -91,15 +96,15 @@ def _with_density(layers: tuple[Layer, ...], observed_kg_m3: float | None) -> tu
 def _with_water(
     layers: tuple[Layer, ...], read_m: float | None, bottom_m: float
 ) -> tuple[Layer, ...]:
-    """Put the water's top where it was read: the lowest layer's, or a new layer of water."""
+    """Put the water's top where it was read: that of the water there is, or a new layer of it."""
     if read_m is None:
         return layers
-    above = layers[1:] if len(layers) > 1 else layers
+    above = layers[1:] if _has_water(layers) else layers
     if read_m <= bottom_m:
         return above
-    water = layers[0] if len(layers) > 1 else Layer("free water", Water())
+    water = layers[0] if _has_water(layers) else Layer("free water", Water())
     above = tuple(layer for layer in above if layer.top_m is None or layer.top_m > read_m)
-    return (Layer(water.name, water.model, read_m), *above)
+    return (replace(water, top_m=read_m), *above)
 
 
 def _temperatures(

@@ -11,3 +11,10 @@ def pressure(pa: float) -> str:
 def length(metres: float) -> str:
     """Return a length in m, to the millimetre."""
     return f"{metres:.3f} m"
+
+
+def listed(words: list[str]) -> str:
+    """Return words joined as in a sentence: "a", "a and b", "a, b and c"."""
+    if len(words) < 2:
+        return "".join(words)
+    return f"{', '.join(words[:-1])} and {words[-1]}"

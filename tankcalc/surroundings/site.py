@@ -44,6 +44,8 @@ class Surroundings:
         "value", "height" (standard atmosphere at the site's height), or "assumed".
     air_temperature_k : float or None
         Outside temperature, K; None where the site states none.
+    gravity_uncertainty_m_s2, air_uncertainty_kg_m3 : float or None
+        Standard uncertainties, where the site states them.
     """
 
     gravity_m_s2: float
@@ -53,6 +55,8 @@ class Surroundings:
     outside_pressure_pa: float
     outside_pressure_from: str
     air_temperature_k: float | None = None
+    gravity_uncertainty_m_s2: float | None = None
+    air_uncertainty_kg_m3: float | None = None
 
 
 def surroundings(

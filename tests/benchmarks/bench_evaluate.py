@@ -20,7 +20,8 @@ from tanks import single, transmitters, upright
 from tankcalc.fluids.samples import Samples
 from tankcalc.gauging import evaluate
 from tankcalc.gauging.case import Case
-from tankcalc.gauging.surface import find_surface
+from tankcalc.gauging.model import Model
+from tankcalc.gauging.state import find_state
 from tankcalc.geometry import horizontal_cylinder, torispherical_standard
 from tankcalc.readings import Readings
 
@@ -49,10 +50,8 @@ def measure(slope: float) -> None:
     readings = Readings(p1_pa=pressures)
 
     def contents() -> object:
-        case = Case.of(tank, brine, readings)
-        level = find_surface(case).level_m
-        volume, moment = vessel.volume_and_moment(level)
-        return case.filling.mass_from(level, volume, moment)
+        model = Model(Case.of(tank, brine, readings))
+        return model.contents(find_state(model).state)
 
     copy = best(pressures.copy)
     for name, work in (
