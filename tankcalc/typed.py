@@ -12,11 +12,12 @@ from tankcalc.constants import STANDARD_ATMOSPHERE_PA
 from tankcalc.errors import QuantityError
 from tankcalc.instruments import DifferentialTransmitter, Transmitter
 from tankcalc.readings import Readings
+from tankcalc.signals import Signal, pressure_from_share, signal_from_current_a, signal_from_share
 from tankcalc.tank import Tank
 from tankcalc.text import clean
 
-FAILED_BELOW_MA, FAILED_ABOVE_MA = 3.6, 21.0
-"""A 4-20 mA signal outside of these is that of a failed transmitter: NAMUR NE 43 (from memory)."""
+PRESSURES = ("p1", "p2", "p3", "dp")
+"""Readings of a transmitter: a pressure, or its signal."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -79,11 +80,13 @@ def readings_from_text(tank: Tank, typed: Mapping[str, str]) -> tuple[Readings, 
     Returns
     -------
     readings : Readings
-        SI. What could not be read is left out.
+        SI. What could not be read is left out, and so is the pressure of a failed signal, which
+        is named in ``signals`` instead.
     problems : dict of str to str
         By field name: what is wrong and what to type instead.
     """
     values: dict[str, Any] = {}
+    signals: list[tuple[str, str]] = []
     problems: dict[str, str] = {}
     for name, text in typed.items():
         if not text.strip():
@@ -93,17 +96,19 @@ def readings_from_text(tank: Tank, typed: Mapping[str, str]) -> tuple[Readings, 
             problems[clean(name)] = "is not the name of a reading."
             continue
         try:
-            values[field.target] = _value(tank, field, text)
+            if name in PRESSURES:
+                values[field.target], status = _transmitter_pressure(tank, name, text)
+                signals += [(name, status)] if status != "good" else []
+            else:
+                values[field.target] = _value(tank, field, text)
         except QuantityError as error:
             problems[name] = str(error)
-    return Readings(**values), problems
+    return Readings(**values, signals=tuple(signals)), problems
 
 
 def _value(tank: Tank, field: Field, text: str) -> Any:
-    if field.name in ("p1", "p2", "p3", "dp"):
-        return _transmitter_pressure(tank, field.name, text)
     if field.target == "temperatures":
-        return _temperatures(text)
+        return _temperatures(tank, text)
     quantity = units.parse(text, field.dimension)
     if field.name == "barometer":
         return _barometer(quantity)
@@ -111,8 +116,11 @@ def _value(tank: Tank, field: Field, text: str) -> Any:
     return quantity.si
 
 
-def _transmitter_pressure(tank: Tank, tag: str, text: str) -> float:
-    """Return a reading (Pa) in the transmitter's own reference, from a pressure or its signal."""
+def _transmitter_pressure(tank: Tank, tag: str, text: str) -> tuple[float | None, str]:
+    """Return a reading (Pa, the transmitter's own reference) and what its signal is worth.
+
+    A pressure as such counts as a good signal; of a failed signal there is no pressure.
+    """
     fitted = tank.dp if tag == "dp" else tank.transmitters.get(tag)
     quantity = units.parse_any(text, ("pressure", "current", "fraction"))
     if fitted is None:
@@ -122,10 +130,23 @@ def _transmitter_pressure(tank: Tank, tag: str, text: str) -> float:
         )
     if quantity.dimension == "pressure":
         _check_reference(fitted, tag, quantity)
-        return quantity.si
+        return quantity.si, "good"
     if quantity.dimension == "fraction" and quantity.unit != "%":
         raise QuantityError(quantity.text, "the unit is missing.", 'Type "98.2 kPa" or "37.5 %".')
-    return _from_signal(fitted, tag, quantity)
+    signal = _signal(quantity)
+    if signal.status == "failed":
+        return None, signal.status
+    if fitted.range_pa is None:
+        why = f"{tag} has no range in the tank file, so a signal says nothing."
+        raise QuantityError(quantity.text, why, "Type a pressure, or add the range.")
+    return pressure_from_share(signal.share, fitted.range_pa), signal.status
+
+
+def _signal(quantity: units.Quantity) -> Signal:
+    """Return the signal that a current or a percentage of range is."""
+    if quantity.dimension == "current":
+        return signal_from_current_a(quantity.si)
+    return signal_from_share(quantity.si)
 
 
 def _check_reference(
@@ -146,27 +167,7 @@ def _check_reference(
         raise QuantityError(quantity.text, why, 'Type "psia" if that is what it shows.')
 
 
-def _from_signal(
-    fitted: Transmitter | DifferentialTransmitter, tag: str, quantity: units.Quantity
-) -> float:
-    """Return the pressure (Pa) behind a 4-20 mA signal or a percentage of range."""
-    if fitted.range_pa is None:
-        why = f"{tag} has no range in the tank file, so a signal says nothing."
-        raise QuantityError(quantity.text, why, "Type a pressure, or add the range.")
-    low, high = fitted.range_pa
-    share = quantity.si
-    if quantity.dimension == "current":
-        milliampere = quantity.si * 1000.0
-        if not FAILED_BELOW_MA <= milliampere <= FAILED_ABOVE_MA:
-            why = (
-                f"below {FAILED_BELOW_MA} and above {FAILED_ABOVE_MA} mA a transmitter has failed."
-            )
-            raise QuantityError(quantity.text, why, "No pressure can be read from it.")
-        share = (milliampere - 4.0) / 16.0
-    return low + share * (high - low)
-
-
-def _temperatures(text: str) -> tuple[tuple[float | None, float], ...]:
+def _temperatures(tank: Tank, text: str) -> tuple[tuple[float | None, float], ...]:
     """Return (elevation in m or None, temperature in K) pairs of "18 degC" or "1 m: 18 degC, …"."""
     if ":" not in text:
         return ((None, _temperature(text)),)
@@ -176,7 +177,12 @@ def _temperatures(text: str) -> tuple[tuple[float | None, float], ...]:
         if not colon:
             why = "each temperature needs its elevation."
             raise QuantityError(clean(part), why, 'Type "1 m: 18 degC, 5 m: 21 degC".')
-        pairs.append((units.parse(where, "length").si, _temperature(what)))
+        elevation = units.parse(where, "length").si
+        low, high = tank.vessel.z_min, tank.vessel.z_max
+        if not low <= elevation <= high:
+            why = f"{tank.name} reaches from {low:.3f} m to {high:.3f} m."
+            raise QuantityError(clean(where), why, "Check the elevation.")
+        pairs.append((elevation, _temperature(what)))
     elevations = [z for z, _ in pairs]
     if len(set(elevations)) != len(elevations):
         raise QuantityError(clean(text), "two temperatures are at one elevation.")
@@ -203,7 +209,7 @@ def _check_possible(quantity: units.Quantity, field: Field) -> None:
     """Refuse values that nothing can have."""
     low, high, why = {
         "temperature": (0.0, 2000.0, "no liquid has this temperature."),
-        "density": (1.0, 20_000.0, "no liquid has this density."),
+        "density": (250.0, 3_500.0, "no liquid that is stored has this density."),
         "fraction": (0.0, 1.0, "a share lies between 0 and 100 %."),
     }.get(field.dimension, (-math.inf, math.inf, ""))
     if not low <= quantity.si <= high:

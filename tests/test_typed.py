@@ -53,6 +53,35 @@ def test_a_reversed_range_scales_its_signal() -> None:
 
 
 @pytest.mark.parametrize(
+    ("tag", "text"), [("p1", "3.5 mA"), ("p1", "21.5 mA"), ("dp", "-3 %"), ("p2", "0 mA")]
+)
+def test_a_failed_signal_gives_no_pressure_and_is_named(tag: str, text: str) -> None:
+    readings = read(**{tag: text}, level="5 m")
+    assert readings.given() == {"level_m"}
+    assert readings.signals == ((tag, "failed"),)
+
+
+@pytest.mark.parametrize(
+    ("text", "pascal", "worth"),
+    [
+        ("3.7 mA", -3_000.0, "uncertain"),
+        ("-1 %", -1_600.0, "saturated"),
+        ("20.5 mA", 165_000.0, "saturated"),
+        ("105 %", 168_000.0, "uncertain"),
+    ],
+)
+def test_a_signal_past_its_range_is_read_and_named(text: str, pascal: float, worth: str) -> None:
+    readings = read(p1=text, dp="8 mA")
+    assert readings.p1_pa == pytest.approx(pascal)
+    assert readings.dp_pa == pytest.approx(-75_000.0)
+    assert readings.signals == (("p1", worth),)
+
+
+def test_good_signals_and_pressures_are_not_named() -> None:
+    assert read(p1="12 mA", p3="1.5 kPa", dp="100 %").signals == ()
+
+
+@pytest.mark.parametrize(
     ("name", "text", "says"),
     [
         ("p1", "98.2", "unit"),
@@ -60,8 +89,6 @@ def test_a_reversed_range_scales_its_signal() -> None:
         ("p2", "14.2 psi", 'Type "psia"'),
         ("p2", "1.2 barg", "p2 reads absolute pressure, this is gauge"),
         ("dp", "-3 kPa(g)", "neither gauge nor absolute"),
-        ("p1", "3.5 mA", "failed"),
-        ("p1", "21.5 mA", "failed"),
         ("p2", "12 mA", "no range"),
         ("p1", "0.5", "unit is missing"),
         ("p1", "12 m", "length"),

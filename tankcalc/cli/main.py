@@ -21,6 +21,7 @@ COMMANDS = {
     "console": "open the console (the default)",
     "convert": "readings of one tank to level, volume and mass",
     "strap": "print a capacity table",
+    "span": "what each transmitter should read, empty to full",
     "vet": "check profile files: every problem, with file, line and key",
     "begin": "write a commented starter site",
     "shiftlog": "add to, list and verify the log",
@@ -58,7 +59,9 @@ def main(argv: Sequence[str]) -> int:
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return 1
     except OSError as error:
-        print(f"tankcalc: {clean(str(error), 1000)}", file=sys.stderr)
+        why = error.strerror or str(error)
+        where = f"{error.filename}: " if error.filename else "the output could not be written: "
+        print(f"tankcalc: {clean(f'{where}{why}', 1000)}.", file=sys.stderr)
         return 1
     except KeyboardInterrupt:
         return 130
