@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import itertools
 from collections.abc import Callable
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, NamedTuple
 
 from tankcalc.errors import InputError
 from tankcalc.profiles.findings import At, Findings
@@ -19,6 +19,13 @@ if TYPE_CHECKING:
 
 NOT_YET = ("petroleum", "ethanol", "solution", "liquefied gas")
 """Models a profile may name that this version does not compute."""
+
+
+class Stated(NamedTuple):
+    """A density model, and the standard uncertainty stated of it (kg/m3)."""
+
+    model: DensityModel
+    uncertainty_kg_m3: float | None
 
 
 def _constant(values: Values) -> DensityModel:
@@ -55,19 +62,22 @@ def _samples(values: Values) -> DensityModel:
     return Samples(elevations, densities, values["beyond"])
 
 
+_DENSITY = quantity("density", "positive")
+
+
 def model(keys: dict[str, Any], make: Callable[[Values], DensityModel]) -> Table:
     """Return the table of one model: its keys, and how the model is made of them."""
 
-    def build(values: Values, at: At, findings: Findings) -> DensityModel | None:
+    def build(values: Values, at: At, findings: Findings) -> Stated | None:
         if not _points_rise(values.get("points", ()), at, findings):
             return None
         try:
-            return make(values)
+            return Stated(make(values), values["uncertainty"])
         except InputError as error:
             findings.add(at, str(error))
             return None
 
-    return Table(keys, build)
+    return Table({**keys, "uncertainty": may(_DENSITY)}, build)
 
 
 def _points_rise(points: list[tuple[float, float]], at: At, findings: Findings) -> bool:
@@ -82,8 +92,6 @@ def _points_rise(points: list[tuple[float, float]], at: At, findings: Findings) 
             )
     return len(findings) == before
 
-
-_DENSITY = quantity("density", "positive")
 
 DENSITY = ByKind(
     "model",
@@ -117,7 +125,7 @@ class Density:
     """``[density]`` of a fluid file."""
 
     def read(self, value: object, at: At, findings: Findings) -> Any:
-        """Return the density model, or None after noting what is wrong."""
+        """Return what is stated of the density, or None after noting what is wrong."""
         named = value.get("model") if isinstance(value, dict) else None
         if named in NOT_YET:
             available = ", ".join(DENSITY.tables)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from tankcalc.fluids.fluid import Fluid, Layer
@@ -40,7 +41,8 @@ def read_fluid(document: Document) -> Fluid | None:
     if ("density" in document.data) == ("layer" in document.data):
         findings.add((), "a fluid takes [density] or [[layer]].", "Write one of them.")
     elif values["density"] is not None:
-        layers = (Layer(name, values["density"]),)
+        stated = values["density"]
+        layers = (Layer(name, stated.model, None, stated.uncertainty_kg_m3),)
     elif values["layer"] is not None:
         layers, vapour_of_top = _layers(values["layer"], document)
         vapour = vapour or vapour_of_top
@@ -57,7 +59,7 @@ def _layers(stack: list[Values], document: Document) -> tuple[tuple[Layer, ...],
     for n, entry in enumerate(stack):
         liquid = _liquid(entry["fluid"], ("layer", n, "fluid"), document)
         if liquid is not None:
-            layers.append(Layer(liquid.name, liquid.layers[0].model, entry["top"]))
+            layers.append(replace(liquid.layers[0], name=liquid.name, top_m=entry["top"]))
             vapour = liquid.vapour
     return tuple(layers), vapour
 

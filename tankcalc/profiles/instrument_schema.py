@@ -104,6 +104,7 @@ def _transmitter(values: Values, at: At, findings: Findings) -> Transmitter | No
         range_pa=range_pa,
         accuracy=values["accuracy"],
         leg=values["leg"] or values["purge"],
+        elevation_uncertainty_m=values["elevation_uncertainty"],
     )
 
 
@@ -126,6 +127,7 @@ _PRESSURE = Table(
     {
         "elevation": need(_ELEVATION),
         "reads": need(choice("gauge", "absolute")),
+        "elevation_uncertainty": may(quantity("length", "positive")),
         "vent_elevation": may(_ELEVATION),
         "range": may(_RANGE),
         "accuracy": may(_ACCURACY),

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from dataclasses import replace
 
 from tankcalc.errors import InputError
 from tankcalc.profiles.findings import At, Findings, nearest, show
@@ -118,6 +119,7 @@ SITE = Table(
                     "value": may(quantity("acceleration", "positive")),
                     "latitude": may(quantity("angle")),
                     "height": may(quantity("length")),
+                    "uncertainty": may(quantity("acceleration", "positive")),
                 },
                 _gravity,
             )
@@ -129,6 +131,7 @@ SITE = Table(
                     "pressure": may(quantity("pressure", "positive")),
                     "temperature": may(quantity("temperature")),
                     "humidity": may(fraction()),
+                    "uncertainty": may(quantity("density", "positive")),
                 },
                 _air,
             )
@@ -144,7 +147,7 @@ def read_surroundings(values: Values, findings: Findings) -> Surroundings | None
     """Return gravity, outside air and its pressure from what a site states."""
     gravity, air = values["gravity"] or {}, values["air"] or {}
     try:
-        return surroundings(
+        made = surroundings(
             gravity_m_s2=gravity.get("value"),
             latitude_rad=gravity.get("latitude"),
             height_m=gravity.get("height"),
@@ -152,6 +155,11 @@ def read_surroundings(values: Values, findings: Findings) -> Surroundings | None
             outside_pressure_pa=air.get("pressure"),
             air_temperature_k=air.get("temperature"),
             humidity=air.get("humidity"),
+        )
+        return replace(
+            made,
+            gravity_uncertainty_m_s2=gravity.get("uncertainty"),
+            air_uncertainty_kg_m3=air.get("uncertainty"),
         )
     except InputError as error:
         key, _, why = str(error).partition(": ")

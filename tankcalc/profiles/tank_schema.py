@@ -15,7 +15,7 @@ from tankcalc.profiles.shape_schema import SHAPE
 from tankcalc.profiles.shell_schema import CERTIFICATE, DEADWOOD, FLOATING_ROOF, FLOW, SHELL
 from tankcalc.profiles.tables import Loose, Table, Values, may, need
 from tankcalc.profiles.tank_checks import check_elevations, check_limits, check_shell
-from tankcalc.profiles.vapour_schema import VAPOUR
+from tankcalc.profiles.vapour_schema import VAPOUR, VAPOUR_SPACE
 from tankcalc.profiles.vessels import Shaped, place_of
 from tankcalc.surroundings import Surroundings
 from tankcalc.tank import LIMIT_ORDER, Tank
@@ -40,6 +40,7 @@ TANK = Table(
         "thermometer": may(THERMOMETER),
         "flow": may(FLOW),
         "vapour": may(VAPOUR),
+        "vapour_space": may(VAPOUR_SPACE),
     }
 )
 
@@ -99,6 +100,7 @@ def _fitted(values: Values) -> dict[str, Any]:
     return {
         "dp": dp,
         "vapour": values["vapour"],
+        "relief_pa": values["vapour_space"],
         "shell": values["shell"],
         "floating_roof": values["floating_roof"],
         "table": values["table"],
