@@ -145,7 +145,7 @@ def test_the_logged_result_is_that_of_convert(
 def test_the_texts_behind_a_result_are_kept_as_they_were(terminal: Terminal) -> None:
     terminal.add("T-1", "--p1", "85.3 kPa")
     (terminal.site / "tanks" / "T-1.toml").write_text(TANK.replace("20 m", "21 m"))
-    terminal.add("T-1", "--p1", "85.3 kPa")
+    terminal.add("T-1", "--p1", "85.4 kPa")
     first, second = terminal.listed()
     store = open_store(terminal.log)
     assert store.get_config(first["versions"]["tank"]) == TANK.encode()
@@ -153,6 +153,29 @@ def test_the_texts_behind_a_result_are_kept_as_they_were(terminal: Terminal) -> 
     assert store.get_config(first["versions"]["site"]) == SITE.encode()
     assert first["versions"]["fluid"] == sha256(OIL.encode()).hexdigest()
     store.close()
+
+
+@pytest.mark.parametrize(
+    ("second", "says"),
+    [
+        (("--p1", "85.3 kPa"), "p1 was typed exactly as at the reading before"),
+        (("--p1", "95 kPa", "--moving", "static"), "declared at rest, but the mass has risen"),
+        (
+            ("--p1", "75 kPa", "--moving", "receiving"),
+            "declared receiving, but the mass has fallen",
+        ),
+    ],
+)
+def test_a_reading_is_held_against_the_one_before(
+    terminal: Terminal, second: tuple[str, ...], says: str
+) -> None:
+    terminal.add("T-1", "--p1", "85.3 kPa", "--at", "2025-12-01T08:00Z")
+    said = terminal("add", "T-1", *second, "--at", "2025-12-01T09:00Z")
+    assert said.code == 0
+    assert says in said.err
+    _, entry = terminal.listed()
+    assert entry["result"]["status"] == "check"
+    assert any(says in warning["message"] for warning in entry["result"]["warnings"])
 
 
 def test_a_note_needs_no_reading(terminal: Terminal) -> None:
@@ -228,7 +251,13 @@ def test_the_time_of_the_reading_decides_the_shift(terminal: Terminal) -> None:
 def test_the_list_is_filtered_and_the_newest_is_last(terminal: Terminal) -> None:
     for hour, tank in ((8, "T-1"), (9, "T-2"), (10, "T-1"), (7, "T-1")):
         terminal.add(
-            tank, "--level", "3 m", "--at", f"2025-12-01T{hour:02}:00Z", "--note", f"{hour}"
+            tank,
+            "--level",
+            f"3.00{hour} m",
+            "--at",
+            f"2025-12-01T{hour:02}:00Z",
+            "--note",
+            f"{hour}",
         )
 
     def notes(*words: str) -> list[str]:

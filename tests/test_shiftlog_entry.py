@@ -60,7 +60,7 @@ def test_the_canonical_form_stays_what_it_is() -> None:
     entry = sample(uid=bytes(range(16)), note="é\x1b", result={"level_m": 0.1, "ok": True})
     text = (
         '{"console":"host:1","entered_us":1796126400000000,"fluid":"gas-oil","form":1,'
-        '"kind":"reading","note":"\\u00e9\\u001b","program":"0.1.0","reason":"","ref":null,'
+        '"kind":"reading","movement":"","note":"\\u00e9\\u001b","program":"0.1.0","reason":"","ref":null,'
         '"result":{"level_m":{"float":"0x1.999999999999ap-4"},"ok":true},"shift":"Day",'
         '"shift_date":"2026-12-01","site":"Skerry Point Terminal","t_us":1796126400000000,'
         '"tank":"T-101","time_zone":"Europe/Lisbon",'

@@ -22,6 +22,7 @@ from tankcalc.errors import InputError, LogBrokenError, StoreError
 from tankcalc.shiftlog import (
     as_object,
     as_text,
+    held_against_log,
     log_address,
     named_log,
     note_entry,
@@ -37,6 +38,9 @@ if TYPE_CHECKING:
     from tankcalc.cli.parser import CommandParser
     from tankcalc.profiles import Site
     from tankcalc.shiftlog import Entry, Row, Store
+
+RECENT = 8
+"""Earlier entries of the tank that a reading is held against."""
 
 MOST_ROWS = 1_000_000_000
 _HEAD = re.compile(r"(\d{1,18})[: ]([0-9a-fA-F]{8,64})", re.ASCII)
@@ -78,6 +82,12 @@ def _declare_add(actions: argparse._SubParsersAction[CommandParser]) -> None:
     parser.add_argument(
         "--who", metavar="NAME", default="", help="name or initials; the login name is kept as well"
     )
+    parser.add_argument(
+        "--moving",
+        choices=("static", "receiving", "delivering"),
+        default="",
+        help="what the tank is doing; held against the reading before",
+    )
     parser.add_argument("--at", metavar="TIME", help=f"when it was read: {_TIME_HELP}")
     add_reading_options(parser)
 
@@ -113,24 +123,23 @@ def _declare_verify(actions: argparse._SubParsersAction[CommandParser]) -> None:
 
 def _add(args: argparse.Namespace) -> int:
     site = site_from(args)
-    entry = _entry_from(args, site)
-    texts = {version: site.text(version) for version in entry.versions.values()}
     with closing(open_store(log_address(args.log, site))) as store:
         try:
+            entry = _entry_from(args, site, store)
+            texts = {version: site.text(version) for version in entry.versions.values()}
             store.append(entry, texts)
         except StoreError as error:
             raise type(error)(f"not saved: {error}") from error
     print(entry.id, flush=True)
-    if entry.status != "refused":
-        return 0
-    print("tankcalc: logged as refused: these readings have no honest answer.", file=sys.stderr)
-    assert entry.result is not None
-    for warning in entry.result["warnings"]:
+    refused = entry.status == "refused"
+    if refused:
+        print("tankcalc: logged as refused: these readings have no honest answer.", file=sys.stderr)
+    for warning in (entry.result or {}).get("warnings", ()):
         print(f"tankcalc: {clean(warning['message'], 1000)}", file=sys.stderr)
-    return 3
+    return 3 if refused else 0
 
 
-def _entry_from(args: argparse.Namespace, site: Site) -> Entry:
+def _entry_from(args: argparse.Namespace, site: Site, store: Store) -> Entry:
     """Return the entry that the arguments ask for."""
     now = now_us()
     at = None if args.at is None else parse_time(args.at, zone_named(site.time_zone), now)
@@ -146,12 +155,16 @@ def _entry_from(args: argparse.Namespace, site: Site) -> Entry:
             )
         return note_entry(site=site, note=args.note, now_us=now, t_us=at, tank=tank, who=args.who)
     fluid = site.fluid_for(tank, args.fluid)
+    found = answer(tank, fluid, typed)
+    rows = store.tail(RECENT, tank=tank.file)
+    taken = now if at is None else at
     return reading_entry(
         site=site,
         tank=tank,
         fluid=fluid,
         typed=typed,
-        result=answer(tank, fluid, typed),
+        result=held_against_log(found, rows, tank, fluid, typed, taken, args.moving),
+        movement=args.moving,
         now_us=now,
         t_us=at,
         note=args.note,

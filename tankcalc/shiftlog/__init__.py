@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Any
 if TYPE_CHECKING:
     from tankcalc.shiftlog.address import default_log, log_address, named_log, open_store
     from tankcalc.shiftlog.chain import Flaw, VerifyResult
+    from tankcalc.shiftlog.earlier import held_against_log
     from tankcalc.shiftlog.entry import Entry
     from tankcalc.shiftlog.listing import as_object, as_text
     from tankcalc.shiftlog.make import login_name, note_entry, reading_entry
@@ -30,6 +31,7 @@ _HOME = {
     "as_text": "listing",
     "login_name": "make",
     "note_entry": "make",
+    "held_against_log": "earlier",
     "reading_entry": "make",
     "Shift": "shifts",
     "shift_at": "shifts",
@@ -54,6 +56,7 @@ __all__ = [
     "as_object",
     "as_text",
     "default_log",
+    "held_against_log",
     "iso_utc",
     "log_address",
     "login_name",

@@ -56,6 +56,8 @@ class Entry:
         ``uid`` of an earlier entry that this one is about.
     reason : str
         Why it is about that one.
+    movement : str
+        What was declared of the tank: "static", "receiving", "delivering"; empty: nothing.
     """
 
     uid: bytes
@@ -78,6 +80,7 @@ class Entry:
     versions: Mapping[str, str] = field(default_factory=lambda: _NOTHING)
     ref: bytes | None = None
     reason: str = ""
+    movement: str = ""
 
     def __post_init__(self) -> None:
         if len(self.uid) != 16 or (self.ref is not None and len(self.ref) != 16):

@@ -55,6 +55,7 @@ def reading_entry(
     t_us: int | None = None,
     note: str = "",
     who: str = "",
+    movement: str = "",
 ) -> Entry:
     """Return the entry of a reading: what was typed, and what it came to.
 
@@ -74,6 +75,7 @@ def reading_entry(
         note=note,
         who=who,
         versions=_versions(site=site.version, tank=tank.version, fluid=fluid.version),
+        movement=movement,
     )
 
 
