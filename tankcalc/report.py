@@ -2,10 +2,19 @@
 
 from __future__ import annotations
 
+import textwrap
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from tankcalc import units
 from tankcalc.result import Result
+
+if TYPE_CHECKING:
+    from tankcalc.terms import Term
+    from tankcalc.uncertainty import Budget
+
+WIDTH = 80
+"""Columns of the terminals that reports are read on."""
 
 CAUTION = (
     "Not a safety function, not certified for custody transfer. Local codes and licensed "
@@ -40,11 +49,24 @@ _ONLY_WITH_WATER = frozenset({"product_volume_m3", "product_mass_kg"})
 
 @dataclass(frozen=True, slots=True)
 class Row:
-    """One line of a report: the JSON key, what it is called, the value with its unit."""
+    """One line of a report.
+
+    Attributes
+    ----------
+    key : str
+        Its JSON key.
+    label : str
+        What it is called.
+    value : str
+        The value with its unit.
+    give : str
+        The expanded uncertainty with its unit, after "+/- "; empty where it has none.
+    """
 
     key: str
     label: str
     value: str
+    give: str = ""
 
 
 def rows(result: Result, system: units.System) -> list[Row]:
@@ -58,14 +80,66 @@ def rows(result: Result, system: units.System) -> list[Row]:
         value = getattr(result, key)
         if value is None or (key in _ONLY_WITH_WATER and result.water_volume_m3 is None):
             continue
-        found.append(Row(key, label, units.show(float(value), dimension, system)))
+        half = result.expanded_uncertainty.get(key)
+        give = "" if half is None else f"+/- {units.show(half, dimension, system)}"
+        found.append(Row(key, label, units.show(float(value), dimension, system), give))
     return found
+
+
+def headline(result: Result) -> str:
+    """Return the status in words; readings that disagree are told from lesser doubts."""
+    words = STATUS_WORDS[result.status]
+    apart = result.status == "check" and any(n.code == "disagreement" for n in result.warnings)
+    return f"{words}, THE READINGS DISAGREE" if apart else words
 
 
 def text_report(result: Result, system: units.System) -> str:
     """Return the result of one reading as plain text for a terminal or a printer."""
-    lines = [f"{result.tank}, {result.fluid}: {STATUS_WORDS[result.status]}"]
-    lines += [f"  {row.label:<17}{row.value:>20}" for row in rows(result, system)]
-    lines.append(f"Basis: {result.basis}.")
-    lines += [f"{'REFUSED' if n.refuses else 'Check'}: {n.message}" for n in result.warnings]
-    return "\n".join([*lines, CAUTION])
+    lines = [f"{result.tank}, {result.fluid}: {headline(result)}"]
+    lines += [
+        f"  {row.label:<17}{row.value:>20}  {row.give}".rstrip() for row in rows(result, system)
+    ]
+    for key, (low, high) in result.bounds.items():
+        label, dimension = next((f[1], f[2]) for f in _FIGURES if f[0] == key)
+        shown = f"{units.show(low, dimension, system)} to {units.show(high, dimension, system)}"
+        lines.append(f"  {label:<17}{shown}")
+    lines += wrapped(f"Basis: {result.basis}.")
+    for notice in result.warnings:
+        lines += wrapped(f"{'REFUSED' if notice.refuses else 'Check'}: {notice.message}")
+    return "\n".join([*lines, *wrapped(CAUTION)])
+
+
+def wrapped(text: str) -> list[str]:
+    """Return a text as lines that fit the terminal, the later ones indented."""
+    return textwrap.wrap(text, WIDTH - 1, subsequent_indent="  ")
+
+
+def budget_table(budget: Budget, system: units.System) -> str:
+    """Return an uncertainty budget as text: every input's share, the largest first."""
+    keys = (("level_m", "length"), ("volume_m3", "volume"), ("mass_kg", "mass"))
+    lines = [f"{'Uncertainty (k = 1)':<20}{'of it':>14}{'level':>14}{'volume':>15}{'mass':>15}"]
+    for share in budget.shares:
+        own = units.show(share.uncertainty, share.dimension, system)
+        name = share.name + ("" if share.stated else " *")
+        cells = [units.show(abs(share.contributions[k]), d, system) for k, d in keys]
+        lines.append(f"{name:<20}{own:>14}{cells[0]:>14}{cells[1]:>15}{cells[2]:>15}")
+    totals = [units.show(budget.standard[k], d, system) for k, d in keys]
+    lines.append(f"{'combined':<34}{totals[0]:>14}{totals[1]:>15}{totals[2]:>15}")
+    expanded = [units.show(budget.expanded[k], d, system) for k, d in keys]
+    lines.append(f"{'expanded, k = 2':<34}{expanded[0]:>14}{expanded[1]:>15}{expanded[2]:>15}")
+    if budget.shares:
+        name = budget.shares[0].name
+        gain = units.show(budget.gain_of_halving(name), "mass", system)
+        lines.append(f"Halving the uncertainty of {name} buys {gain} of mass (k = 2).")
+    lines.append("* not stated by the site: common practice was taken")
+    return "\n".join(lines)
+
+
+def terms_table(terms: tuple[Term, ...], system: units.System) -> str:
+    """Return the corrections of an answer as text, the largest first."""
+    lines = [f"{'Left out, the answer would be off by':<42}{'level':>16}{'mass':>18}"]
+    for term in terms:
+        level = units.show(-term.level_m, "length", system)
+        mass = units.show(-term.mass_kg, "mass", system)
+        lines.append(f"{term.name:<42}{level:>16}{mass:>18}")
+    return "\n".join(lines)

@@ -44,7 +44,7 @@ def test_json_has_every_key_and_the_right_figures(
     site: Path, capsys: pytest.CaptureFixture[str]
 ) -> None:
     answer = converted(site, capsys, "V-1", "--p1", f"{P1} Pa")
-    assert set(answer) == {*JSON_KEYS, "expanded_uncertainty", "warnings"}
+    assert set(answer) == {*JSON_KEYS, "expanded_uncertainty", "bounds", "warnings"}
     assert answer["level_m"] == pytest.approx(12.0, abs=1e-9)
     assert answer["mass_kg"] == pytest.approx(3769.911184 * 850.0, rel=1e-9)
     assert answer["status"] == "good"
@@ -107,6 +107,9 @@ def test_a_negative_reading_needs_no_trick(site: Path, capsys: pytest.CaptureFix
         (("../../etc/passwd", "--level", "5 m"), 2, ""),
         (("V-1", "--colour", "red"), 2, "unrecognized arguments"),
         (("V-1", "--lev", "5 m"), 2, "unrecognized arguments"),
+        (("V-1", "--level", "5 m", "--level", "6 m"), 2, "given twice"),
+        (("V-1", "--temperature", "400 m: 9 degC, 2 m: 9 degC", "--level", "5 m"), 2, "reaches"),
+        (("V-1", "--level", "5 m", "--density", "0.845 kg/m3"), 2, "no liquid that is stored"),
     ],
 )
 def test_refusals_say_why_and_leave_with_their_code(

@@ -40,6 +40,7 @@ def test_the_text_report_carries_status_basis_reasons_and_caution() -> None:
     refused = text_report(evaluate(upright(), single(850.0), Readings(p1_pa=9e5)), "metric")
     assert "V-1, liquid: REFUSED" in refused
     assert "REFUSED: p1 = 900.000 kPa is above" in refused
-    assert "Basis: p1 against the outside air" in refused
+    assert "Basis: p1 fixes the surface" in refused
     assert refused.endswith("licensed practice decide.")
+    assert max(len(line) for line in refused.splitlines()) < 80
     assert "Not a safety function" in refused

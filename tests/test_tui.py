@@ -142,7 +142,7 @@ def test_the_result_follows_every_key_and_goes_when_the_text_is_not_valid(tmp_pa
         ("50", "unit is missing"),
         ("50 kg", "is a mass"),
         ("50 kPa(a)", "p1 reads gauge pressure"),
-        ("2.0 mA", "a transmitter has failed"),
+        ("2.0 mA", "is that of a failed transmitter"),
         ("900 kPa", "above what a full V-1 can show"),
         ("1,500 kPa", "1,500"),
     ],
@@ -677,3 +677,43 @@ def test_a_defect_of_the_screen_itself_ends_in_words(
     assert "tankcalc: stopped. ZeroDivisionError: the story's own" in said
     assert "Traceback" not in said
     assert "the story's own" in (tmp_path / "state" / "defects.txt").read_text()
+
+
+def test_the_figures_come_with_what_they_are_worth(tmp_path: Path) -> None:
+    async def story(console: Console) -> None:
+        await console.type("50 kPa")
+        await console.wait("6.505 m +/-")
+
+    play(story, tmp_path)
+
+
+def test_the_answer_in_full_has_its_pages(tmp_path: Path) -> None:
+    async def story(console: Console) -> None:
+        await console.type("50 kPa")
+        await console.wait("6.505 m")
+        await console.press("f9")
+        await console.wait("[1 figures]")
+        await console.press("2")
+        await console.wait("Halving the uncertainty of")
+        await console.press("right")
+        await console.wait("Left out, the answer would be off by")
+        await console.press("4")
+        await console.wait("[4 agreement]")
+        await console.wait("can be checked")
+        await console.press("escape")
+        await console.wait("READINGS  (")
+
+    play(story, tmp_path)
+
+
+def test_readings_that_disagree_name_their_suspects(tmp_path: Path) -> None:
+    async def story(console: Console) -> None:
+        await console.type("14.5 bar")
+        await console.press("down", "down")
+        await console.type("12 m")
+        await console.wait("X REFUSED")
+        await console.press("f9")
+        await console.press("4")
+        await console.wait("was typed in")
+
+    play(story, tmp_path)

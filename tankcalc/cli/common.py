@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import argparse
 import sys
-from typing import TYPE_CHECKING
+from collections.abc import Sequence
+from typing import TYPE_CHECKING, Any
 
 from tankcalc.errors import InputError
 from tankcalc.text import clean
@@ -18,6 +19,22 @@ if TYPE_CHECKING:
     from tankcalc.units import System
 
 
+class Once(argparse.Action):
+    """Takes an option that may be given once: the second of two readings is no correction."""
+
+    def __call__(
+        self,
+        parser: argparse.ArgumentParser,
+        namespace: argparse.Namespace,
+        values: str | Sequence[Any] | None,
+        option_string: str | None = None,
+    ) -> None:
+        """Keep the value, or refuse the second."""
+        if getattr(namespace, self.dest, None) is not None:
+            parser.error(f"argument {option_string}: given twice")
+        setattr(namespace, self.dest, values)
+
+
 def add_reading_options(parser: argparse.ArgumentParser) -> None:
     """Add an option for every reading that can be typed."""
     from tankcalc.typed import FIELDS
@@ -25,7 +42,13 @@ def add_reading_options(parser: argparse.ArgumentParser) -> None:
     group = parser.add_argument_group("readings", "each a number with its unit, in quotes")
     for field in FIELDS:
         option = "--" + field.name.replace("_", "-")
-        group.add_argument(option, dest=field.name, metavar="Q", help=field.help.replace("%", "%%"))
+        group.add_argument(
+            option,
+            dest=field.name,
+            metavar="Q",
+            action=Once,
+            help=field.help.replace("%", "%%"),
+        )
 
 
 def typed_from(args: argparse.Namespace) -> dict[str, str]:
@@ -80,7 +103,9 @@ def answer(tank: Tank, fluid: Fluid, typed: dict[str, str]) -> Result:
         Nothing was typed, or something cannot be read.
     """
     from tankcalc.gauging import evaluate
+    from tankcalc.uncertainty import assess, with_uncertainty
 
     if not typed:
         raise InputError('no reading was given. Give one, such as --p1 "98.2 kPa".')
-    return evaluate(tank, fluid, readings_from(tank, typed))
+    readings = readings_from(tank, typed)
+    return with_uncertainty(evaluate(tank, fluid, readings), assess(tank, fluid, readings))

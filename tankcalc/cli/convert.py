@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 from tankcalc.cli.common import (
     add_reading_options,
     answer,
+    readings_from,
     site_from,
     system_from,
     typed_from,
@@ -16,7 +17,16 @@ from tankcalc.cli.common import (
 
 if TYPE_CHECKING:
     from tankcalc.cli.parser import CommandParser
+    from tankcalc.consistency import Disagreement
+    from tankcalc.fluids.fluid import Fluid
+    from tankcalc.readings import Readings
     from tankcalc.result import Result
+    from tankcalc.tank import Tank
+    from tankcalc.units import System
+
+
+DOUBTS = ("disagreement", "density_differs")
+"""Notices after which it is asked which single fault would explain them."""
 
 
 def add_parser(subparsers: argparse._SubParsersAction[CommandParser]) -> None:
@@ -29,6 +39,12 @@ def add_parser(subparsers: argparse._SubParsersAction[CommandParser]) -> None:
     )
     parser.add_argument("tank", metavar="TANK", help="the tank's file in tanks/, without .toml")
     parser.add_argument("--fluid", metavar="NAME", help="a profile in fluids/ (default: contents)")
+    parser.add_argument(
+        "--budget", action="store_true", help="what each input adds to the uncertainty"
+    )
+    parser.add_argument(
+        "--terms", action="store_true", help="what each correction is worth in level and mass"
+    )
     parser.add_argument("--json", action="store_true", help="print one JSON object, SI units")
     add_reading_options(parser)
 
@@ -37,21 +53,82 @@ def run(args: argparse.Namespace) -> int:
     """Print the answer; exit code 3 when there is no honest one."""
     site = site_from(args)
     tank = site.tank(args.tank)
-    result = answer(tank, site.fluid_for(tank, args.fluid), typed_from(args))
+    fluid = site.fluid_for(tank, args.fluid)
+    typed = typed_from(args)
+    result = answer(tank, fluid, typed)
+    readings, system = readings_from(tank, typed), system_from(args, site)
+    doubted = result.status == "refused" or any(n.code in DOUBTS for n in result.warnings)
+    found = explain(tank, fluid, readings) if doubted else None
     if args.json:
-        _print_json(result)
+        _print_json(result, found)
     else:
-        from tankcalc.report import text_report
+        _print_text(result, found, system)
+    if result.status == "refused":
+        return 3
+    _print_working(args, tank, fluid, readings, system)
+    return 0
 
-        print(text_report(result, system_from(args, site)))
-    return 3 if result.status == "refused" else 0
+
+def explain(tank: Tank, fluid: Fluid, readings: Readings) -> Disagreement | None:
+    """Return which single faults would reconcile the readings, None where nothing can be said."""
+    from tankcalc.consistency import explain as explained
+
+    found = explained(tank, fluid, readings)
+    return found if found.explanations else None
 
 
-def _print_json(result: Result) -> None:
+def _print_text(result: Result, found: Disagreement | None, system: System) -> None:
+    from tankcalc.report import text_report, wrapped
+
+    print(text_report(result, system))
+    if found is not None:
+        from tankcalc.consistency import words
+
+        print()
+        for line in words(found, system):
+            print("\n".join(wrapped(line)))
+
+
+def _print_working(
+    args: argparse.Namespace, tank: Tank, fluid: Fluid, readings: Readings, system: System
+) -> None:
+    """Print budget and terms where asked for; beside JSON they are talk, not data."""
+    stream = sys.stderr if args.json else sys.stdout
+    if args.budget:
+        from tankcalc.report import budget_table
+        from tankcalc.uncertainty import assess
+
+        budget = assess(tank, fluid, readings)
+        if budget is not None:
+            print(f"\n{budget_table(budget, system)}", file=stream)
+    if args.terms:
+        from tankcalc.report import terms_table
+        from tankcalc.terms import terms
+
+        print(f"\n{terms_table(terms(tank, fluid, readings), system)}", file=stream)
+
+
+def _print_json(result: Result, found: Disagreement | None) -> None:
     import json
 
     from tankcalc.result import as_json
 
-    print(json.dumps(as_json(result), indent=2, allow_nan=False))
+    data = as_json(result)
+    if found is not None:
+        data["explanations"] = [
+            {
+                "code": one.code,
+                "reading": one.reading,
+                "words": one.words(),
+                "size_si": one.size,
+                "chi_square": one.chi_square,
+                "freedom": one.freedom,
+                "level_m": one.level_m,
+                "volume_m3": one.volume_m3,
+                "mass_kg": one.mass_kg,
+            }
+            for one in found.explanations
+        ]
+    print(json.dumps(data, indent=2, allow_nan=False))
     for notice in result.refusals:
         print(f"tankcalc: {notice.message}", file=sys.stderr)

@@ -9,8 +9,16 @@ from tankcalc.tui.fields import label_of
 from tankcalc.tui.help_text import help_lines
 from tankcalc.tui.log_lines import clock
 from tankcalc.tui.logbook import Unsaved
-from tankcalc.tui.present import all_messages, figure, log_subject, result_title
+from tankcalc.tui.present import (
+    all_messages,
+    figure,
+    log_subject,
+    result_title,
+    table,
+    wrapped,
+)
 from tankcalc.tui.screens.ask import AskQuit
+from tankcalc.tui.screens.detail import DetailScreen, Page
 from tankcalc.tui.screens.note import SaveNote
 from tankcalc.tui.screens.pick import PickFluid
 from tankcalc.tui.screens.read import ReadScreen
@@ -19,6 +27,7 @@ from tankcalc.tui.screens.save import Outcome, SaveReading
 if TYPE_CHECKING:
     from tankcalc.shiftlog import Entry
     from tankcalc.tui.app import ConsoleApp
+    from tankcalc.tui.desk import Answer
     from tankcalc.tui.present import Line
 
 NOT_READY = "Loading; this works in a moment."
@@ -66,7 +75,7 @@ class Actions:
             return app.main.say(app.front.log_trouble or NOT_READY)
         if answer.result is None:
             return app.main.say(f"Nothing to log. {answer.why}")
-        unsaved, again = self._entry()
+        unsaved, answer, again = self._entry()
         time = clock(unsaved.entry.t_us, app.book.zone)
         width = app.size.width - 2
         subject = log_subject(answer, app.front.rows, self._desk.tank_name, time, width)
@@ -101,7 +110,12 @@ class Actions:
         fluid = self._app.front.answer.fluid
         of = "" if fluid is None else f": {clean(fluid.name)}"
         title = f"{clean(self._desk.tank_name)} IN FULL{of}"
-        self._app.push_screen(ReadScreen(title, self._in_full))
+        pages: list[Page] = [("figures", self._in_full)]
+        if self._app.front.answer.readings is not None:
+            pages.append(("uncertainty", self._uncertainty))
+            pages.append(("corrections", self._corrections))
+            pages.append(("agreement", self._agreement))
+        self._app.push_screen(DetailScreen(title, pages))
 
     def quit(self) -> None:
         """Ask, and leave."""
@@ -116,13 +130,14 @@ class Actions:
             self._app.keep_draft()
             self._app.front.show_answer()
 
-    def _entry(self) -> tuple[Unsaved, bool]:
-        """Return the entry of the reading, and whether it was sent before and not saved."""
+    def _entry(self) -> tuple[Unsaved, Answer, bool]:
+        """Return the entry, the answer in it, and whether it was sent before and not saved."""
         from tankcalc.shiftlog import now_us, reading_entry
 
-        answer, held = self._app.front.answer, self._desk.entry
+        held, now = self._desk.entry, now_us()
         if held.unsaved is not None:
-            return held.unsaved, True
+            return held.unsaved, self._app.front.answer, True
+        answer = self._app.front.checked(now)
         assert self._desk.site is not None
         assert answer.tank is not None
         assert answer.fluid is not None
@@ -133,10 +148,10 @@ class Actions:
             fluid=answer.fluid,
             typed=answer.typed,
             result=answer.result,
-            now_us=now_us(),
+            now_us=now,
             note=held.fields.get("note", ""),
         )
-        return self._with_texts(entry), False
+        return self._with_texts(entry), answer, False
 
     def _note_entry(self, who: str, note: str) -> Unsaved:
         from tankcalc.shiftlog import note_entry, now_us
@@ -157,8 +172,8 @@ class Actions:
         """Empty the readings when they are on disk; keep them, and the note, when not."""
         assert outcome is not None
         held = self._desk.entry
-        self._desk.who = outcome.who
         if outcome.receipt is not None:
+            self._desk.who = outcome.who
             held.done()
             self._app.main.form.go()
             said = f"SAVED, on disk: entry {outcome.receipt.seq} of the log."
@@ -173,16 +188,56 @@ class Actions:
 
     def _noted(self, outcome: Outcome | None) -> None:
         assert outcome is not None
-        self._desk.who = outcome.who
         if outcome.receipt is not None:
+            self._desk.who = outcome.who
             self._app.main.say(f"SAVED, on disk: entry {outcome.receipt.seq} of the log.")
         else:
             self._app.main.say("The note was NOT SAVED." if outcome.sent else "No note logged.")
         self._app.front.read_log()
 
+    def _uncertainty(self, width: int) -> list[Line]:
+        """Return what each input adds to the uncertainty."""
+        from tankcalc.report import budget_table
+        from tankcalc.uncertainty import assess
+
+        answer = self._app.front.answer
+        if answer.tank is None or answer.fluid is None or answer.readings is None:
+            return []
+        budget = assess(answer.tank, answer.fluid, answer.readings)
+        if budget is None:
+            return wrapped("There is no answer, so there is no uncertainty of one.", "", width)
+        return table(budget_table(budget, self._desk.units))
+
+    def _corrections(self, width: int) -> list[Line]:
+        """Return what each correction is worth."""
+        from tankcalc.report import terms_table
+        from tankcalc.terms import terms
+
+        answer = self._app.front.answer
+        if answer.tank is None or answer.fluid is None or answer.readings is None:
+            return []
+        found = terms(answer.tank, answer.fluid, answer.readings)
+        if not found:
+            return wrapped("There is no correction that would change the answer.", "", width)
+        return table(terms_table(found, self._desk.units))
+
+    def _agreement(self, width: int) -> list[Line]:
+        """Return whether the readings agree, and which single faults would make them."""
+        from tankcalc.consistency import explain, words
+
+        answer = self._app.front.answer
+        if answer.tank is None or answer.fluid is None or answer.readings is None:
+            return []
+        found = explain(answer.tank, answer.fluid, answer.readings)
+        lines: list[Line] = []
+        for line in words(found, self._desk.units):
+            lines += wrapped(line, "", width)
+        return lines
+
     def _in_full(self, width: int) -> list[Line]:
         answer = self._app.front.answer
         lines = [result_title(answer)]
         lines += [[(f"{label_of(name)}: {text}", "")] for name, text in answer.typed.items()]
-        lines += [figure(row.label, row.value, width) for row in self._app.front.rows]
+        rows = self._app.front.rows
+        lines += [figure(row.label, row.value, width, row.give) for row in rows]
         return [*lines, [], *all_messages(answer, width)]

@@ -6,7 +6,7 @@ It knows no widget. Heavy imports happen inside its methods, after the first pai
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING
 
 from tankcalc.errors import TankcalcError
@@ -15,6 +15,7 @@ from tankcalc.tui.fields import READINGS, label_of
 if TYPE_CHECKING:
     from tankcalc.fluids.fluid import Fluid
     from tankcalc.profiles import Site
+    from tankcalc.readings import Readings
     from tankcalc.result import Result
     from tankcalc.tank import Tank
     from tankcalc.tui.logbook import Unsaved
@@ -42,6 +43,8 @@ class Answer:
         that leaves a reading out would be taken for one that uses it.
     why : str
         Why there is no result; empty when there is one.
+    readings : Readings or None
+        What the result was made of.
     """
 
     tank: Tank | None = None
@@ -50,6 +53,18 @@ class Answer:
     problems: Mapping[str, str] = field(default_factory=dict)
     result: Result | None = None
     why: str = ""
+    readings: Readings | None = None
+
+    def weighed(self) -> Answer:
+        """Return the answer with the uncertainty of its figures."""
+        if self.tank is None or self.fluid is None or self.readings is None:
+            return self
+        if self.result is None or self.result.status == "refused":
+            return self
+        from tankcalc.uncertainty import assess, with_uncertainty
+
+        budget = assess(self.tank, self.fluid, self.readings)
+        return replace(self, result=with_uncertainty(self.result, budget))
 
     @property
     def fitted(self) -> set[str]:
@@ -182,5 +197,9 @@ def _answer(tank: Tank, fluid: Fluid, typed: Mapping[str, str]) -> Answer:
         names = ", ".join(label_of(name) for name in problems)
         return Answer(tank, fluid, typed, problems, why=f"No result: see {names}.")
     result = evaluate(tank, fluid, readings)
-    refused = {n.reading: n.message for n in result.refusals if n.reading}
-    return Answer(tank, fluid, typed, refused, result)
+    refused = {
+        n.reading: n.message
+        for n in result.warnings
+        if n.reading and (n.refuses or n.code == "signal_failed")
+    }
+    return Answer(tank, fluid, typed, refused, result, readings=readings)

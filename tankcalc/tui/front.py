@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import time
 from collections.abc import Sequence
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from tankcalc.errors import StoreError
@@ -12,9 +13,15 @@ from tankcalc.tui.desk import Answer
 from tankcalc.tui.present import CAUTION, units_word, wrapped
 
 if TYPE_CHECKING:
+    from textual.timer import Timer
+
     from tankcalc.report import Row
     from tankcalc.shiftlog import Row as LogRow
     from tankcalc.tui.app import ConsoleApp
+
+
+WEIGH_AFTER_S = 0.15
+"""How long the keys must rest before the uncertainty is worked out: the figures come first."""
 
 
 class Front:
@@ -25,7 +32,10 @@ class Front:
         self.answer = Answer()
         self.rows: Sequence[Row] = ()
         self.log_trouble = ""
+        self._said = ""
+        self._weighing: Timer | None = None
         self._entries: Sequence[LogRow] = ()
+        self._recent: Sequence[LogRow] = ()
 
     def show_answer(self, said: str = "") -> None:
         """Work out what the readings say, and show it; nothing older stays."""
@@ -36,7 +46,30 @@ class Front:
             where = note_defect(self._app.options.state, error)
             self.answer = Answer(why=f"This program failed; no figure is shown. {where}")
             self.rows = ()
-        self._app.main.answer(self.answer, self.rows, said or self._app.drafts.trouble)
+        self._said = said or self._app.drafts.trouble
+        self._app.main.answer(self.answer, self.rows, self._said)
+        if self._weighing is not None:
+            self._weighing.stop()
+        if self.rows:
+            self._weighing = self._app.set_timer(WEIGH_AFTER_S, self.weigh)
+
+    def weigh(self) -> None:
+        """Add what the figures are worth to what is shown."""
+        self.answer = self.answer.weighed()
+        self.rows = self._figures()
+        self._app.main.answer(self.answer, self.rows, self._said)
+
+    def checked(self, at_us: int) -> Answer:
+        """Return the answer with its uncertainty, held against the earlier readings in the log."""
+        answer = self.answer.weighed()
+        if answer.result is None or answer.tank is None or answer.fluid is None:
+            return answer
+        from tankcalc.shiftlog import held_against_log
+
+        result = held_against_log(
+            answer.result, self._recent, answer.tank, answer.fluid, answer.typed, at_us
+        )
+        return replace(answer, result=result)
 
     def bring_tank(self) -> None:
         """Show another tank, with what was typed for it."""
@@ -94,6 +127,7 @@ class Front:
         if self._app.book is not None:
             try:
                 self._entries = await self._app.book.entries(self._app.book.shift(now_us()))
+                self._recent = await self._app.book.recent()
                 self.log_trouble = ""
             except StoreError as error:
                 self.log_trouble = f"The log cannot be read: {error}"

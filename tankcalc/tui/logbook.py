@@ -19,6 +19,10 @@ if TYPE_CHECKING:
 T = TypeVar("T")
 
 
+RECENT = 200
+"""Entries that a reading is held against: the newest of all tanks."""
+
+
 @dataclass(frozen=True, slots=True)
 class Unsaved:
     """An entry that is not on disk yet, with the texts of the profiles it rests on."""
@@ -67,6 +71,10 @@ class LogBook:
     async def entries(self, shift: Shift) -> list[Row]:
         """Return the entries of a shift, newest last."""
         return await self._apart(lambda: list(self._store.between(shift.start_us, shift.end_us)))
+
+    async def recent(self) -> list[Row]:
+        """Return the newest entries of any shift, newest last."""
+        return await self._apart(lambda: self._store.tail(RECENT))
 
     def settle(self, call: Callable[[], None]) -> None:
         """Run something slow that belongs to the disk, in the order it came."""

@@ -31,6 +31,9 @@ STATUS_WORDS: dict[Status, str] = {
 }
 """Each status by a symbol and a word, so that colour is never needed."""
 
+DISAGREE = "!! READINGS DISAGREE: F9, 4"
+"""Said instead of a plain check where readings contradict each other."""
+
 FIRST = (
     "level_m",
     "ullage_m",
@@ -63,20 +66,36 @@ def result_title(answer: Answer) -> Line:
     if answer.result is None:
         return [("RESULT ", "title"), ("- none", "")]
     status = answer.result.status
-    return [("RESULT ", "title"), (STATUS_WORDS[status], status)]
+    apart = any(n.code == "disagreement" for n in answer.result.warnings)
+    words = DISAGREE if apart and status == "check" else STATUS_WORDS[status]
+    return [("RESULT ", "title"), (words, status)]
 
 
 def result_block(rows: Sequence[Row], height: int, width: int) -> list[Line]:
     """Return the figures that matter most, as many as there is room for, in units."""
     rank = {key: n for n, key in enumerate(FIRST)}
     chosen = sorted(rows, key=lambda row: rank.get(row.key, len(FIRST)))[:height]
-    return [figure(row.label, row.value, width) for row in chosen]
+    return [figure(row.label, row.value, width, row.give) for row in chosen]
 
 
-def figure(label: str, value: str, width: int) -> Line:
-    """Return one figure with its label; where both do not fit, the label gives way."""
+def figure(label: str, value: str, width: int, give: str = "") -> Line:
+    """Return one figure with its label and, where there is room, what it is worth.
+
+    Where label and value do not fit, the label gives way.
+    """
     room = min(max(width - columns(value), 0), LABEL_COLUMNS)
-    return [(clip(clean(label), room - 1).ljust(room), ""), (clean(value), "figure")]
+    line = [(clip(clean(label), room - 1).ljust(room), ""), (clean(value), "figure")]
+    for worth in (give, _without_unit(give, value)):
+        # The unit is that of the value, so it may be left out before the figure is.
+        if worth and room + columns(value) + 1 + columns(worth) <= width:
+            return [*line, (f" {clean(worth)}", "")]
+    return line
+
+
+def _without_unit(give: str, value: str) -> str:
+    """Return "+/- 0.031 m" as "+/- 0.031" beside a value in the same unit, else nothing."""
+    unit = value.rpartition(" ")[2]
+    return give.removesuffix(f" {unit}") if give.endswith(f" {unit}") else ""
 
 
 def messages(answer: Answer, said: str, hint: str, width: int, height: int) -> list[Line]:
@@ -121,6 +140,11 @@ def wrapped(text: str, style: str, width: int) -> list[Line]:
     """Return the words, made safe, over as many rows as they need."""
     words = clean(text, 2000)
     return [[(row, style)] for row in wrap(words, max(width, 10), subsequent_indent="  ")]
+
+
+def table(text: str) -> list[Line]:
+    """Return a table of our own as it stands, a line a row."""
+    return [[(row, "")] for row in text.split("\n")]
 
 
 def not_allowed(field: str) -> str:
