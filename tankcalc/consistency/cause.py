@@ -7,9 +7,10 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from tankcalc.consistency.problem import Problem, Solution, choices
+from tankcalc.consistency.problem import Problem, Solution
 from tankcalc.gauging.case import FloatArray
 from tankcalc.gauging.estimate import weighted_residuals, weighted_slopes
+from tankcalc.gauging.groups import choices
 from tankcalc.gauging.model import Model, State
 from tankcalc.gauging.observations import Observation
 

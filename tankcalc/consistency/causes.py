@@ -19,11 +19,12 @@ from tankcalc.consistency.plausibility import (
     WATER_SCALE_M,
     size_penalty,
 )
-from tankcalc.consistency.problem import Solution, choices
+from tankcalc.consistency.problem import Solution
 from tankcalc.constants import ICE_POINT_K
 from tankcalc.fluids.water import Water
 from tankcalc.gauging.case import Case
 from tankcalc.gauging.estimate import FACTOR, VAPOUR, fit, weighted_residuals
+from tankcalc.gauging.groups import choices
 from tankcalc.gauging.model import Model
 from tankcalc.instruments import FilledLeg
 

@@ -10,8 +10,8 @@ from typing import Any
 from tankcalc.consistency.explanation import sentence
 from tankcalc.consistency.inquiry import Inquiry
 from tankcalc.consistency.problem import Problem, settle
+from tankcalc.gauging.groups import COVER_M
 from tankcalc.gauging.model import State
-from tankcalc.gauging.state import COVER_M
 
 NOUNS = {"level_m": "a dip", "density_kg_m3": "the density of a sample"}
 

@@ -15,7 +15,8 @@ from tankcalc.consistency.volume import volume_observation
 from tankcalc.errors import RangeError
 from tankcalc.fluids.fluid import Fluid
 from tankcalc.gauging.case import BoolArray, Case, FloatArray
-from tankcalc.gauging.estimate import FACTOR, SURFACE, VAPOUR, determined, fit, weighted_residuals
+from tankcalc.gauging.estimate import determined, fit, weighted_residuals
+from tankcalc.gauging.groups import choices
 from tankcalc.gauging.model import Model, State
 from tankcalc.gauging.observations import Observation, observations_of
 from tankcalc.hydrostatics import surface_from_pressures
@@ -146,16 +147,6 @@ class Solution:
     def solved(self) -> bool:
         """Whether the (first) row has a state."""
         return bool(self.choice[0] != UNSOLVED)
-
-
-def choices(model: Model) -> tuple[tuple[int, ...], ...]:
-    """Return the sets of unknowns that readings may determine, the largest first."""
-    if model.vent_pa is not None:
-        return (SURFACE, FACTOR), (SURFACE,)
-    sets: tuple[tuple[int, ...], ...] = ((SURFACE, FACTOR, VAPOUR), (SURFACE, VAPOUR))
-    if model.case.given.keys() & {"level_m", "ullage_m", "dp_pa"}:
-        sets += ((SURFACE,),)
-    return sets
 
 
 def settle(

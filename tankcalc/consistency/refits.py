@@ -6,9 +6,10 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from tankcalc.consistency.problem import Problem, Solution, choices, settle, starts
+from tankcalc.consistency.problem import Problem, Solution, settle, starts
 from tankcalc.gauging.case import FloatArray
 from tankcalc.gauging.estimate import weighted_slopes
+from tankcalc.gauging.groups import choices
 from tankcalc.gauging.model import State
 from tankcalc.gauging.observations import Observation
 

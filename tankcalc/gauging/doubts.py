@@ -9,9 +9,10 @@ import numpy as np
 from tankcalc.constants import ICE_POINT_K, STANDARD_GRAVITY_M_S2
 from tankcalc.gauging.case import BoolArray, Case, FloatArray
 from tankcalc.gauging.estimate import FACTOR
+from tankcalc.gauging.groups import Group
 from tankcalc.gauging.model import Model, State
 from tankcalc.gauging.observations import UNSTATED_DIP_M, observations_of
-from tankcalc.gauging.state import Found, Group
+from tankcalc.gauging.state import Found
 from tankcalc.gauging.words import length, listed, pressure
 from tankcalc.result import Notice
 from tankcalc.tank import LIMIT_ORDER

@@ -1,0 +1,88 @@
+"""States that no tank can be in, and readings that leave the state open."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+
+import numpy as np
+
+from tankcalc.gauging.beginning import level_behind
+from tankcalc.gauging.case import BoolArray
+from tankcalc.gauging.estimate import FACTOR
+from tankcalc.gauging.groups import Group
+from tankcalc.gauging.limits_of_sight import ROUNDING_M, refusal, unread_blanket
+from tankcalc.gauging.model import Model, State
+from tankcalc.gauging.words import listed
+from tankcalc.result import Notice
+
+LIGHTEST, HEAVIEST = 0.6, 1.6
+"""Measured densities beyond these shares of the profile's are taken for a fault, not a density:
+two liquids that share a tank farm are rarely further apart (common practice, no source)."""
+
+
+def outside(model: Model, state: State, unknown: BoolArray) -> Iterator[Notice]:
+    """Refuse rows whose readings together put the surface outside the vessel."""
+    vessel = model.case.tank.vessel
+    slack = ROUNDING_M
+    out = (state.surface_m < vessel.z_min - slack) | (state.surface_m > vessel.z_max + slack)
+    out = (out | np.isnan(state.surface_m)) & ~unknown
+    if np.any(out):
+        message = "The readings together put the surface outside the tank: one of them is wrong."
+        yield refusal("surface_outside", message, where=out)
+
+
+def too_light(model: Model, state: State, unknown: BoolArray) -> Iterator[Notice]:
+    """Refuse rows in which an extended density profile has run out below the surface."""
+    bottom, slack = model.case.tank.vessel.z_min, 1e-9
+    surface = np.where(np.isnan(state.surface_m), bottom, state.surface_m)
+    lightest = np.minimum(model.density(surface - slack, state), model.density(surface, state))
+    rv = model.vapour_density(state.vapour_pa)
+    light = ~(lightest > rv) & ~unknown & ~np.isnan(state.surface_m)
+    if np.any(light):
+        message = (
+            "The density profile, carried on beyond its samples, falls to that of the vapour below "
+            "the surface. Take a sample higher up, or hold the last one."
+        )
+        yield refusal("density_run_out", message, "fluid", light)
+
+
+def impossible_density(model: Model, groups: Sequence[Group]) -> Iterator[Notice]:
+    """Refuse rows whose readings together mean a density that no liquid of this profile has."""
+    for group in groups:
+        if group.fit is None or FACTOR not in group.fit.unknowns:
+            continue
+        factor = group.fit.state.factor
+        odd = ~((factor >= LIGHTEST) & (factor <= HEAVIEST))
+        if not np.any(odd):
+            continue
+        rows = np.zeros(group.rows.shape, dtype=bool)
+        rows[np.flatnonzero(group.rows)[odd]] = True
+        first = int(np.flatnonzero(odd)[0])
+        rho = float(model.product.density(float(group.fit.state.surface_m[first])))
+        names = listed([o.name for o in group.used])
+        yield refusal(
+            "density_impossible",
+            f"{names} together mean {float(factor[first]) * rho:.0f} kg/m3 where the profile says "
+            f"{rho:.0f}: one of them is wrong, or the profile is that of another liquid.",
+            "density",
+            rows.reshape(model.case.shape),
+        )
+
+
+def needs_pressure(model: Model) -> bool:
+    """Return whether the vapour's density follows from a pressure that has to be known."""
+    vapour = model.case.tank.vapour or model.case.fluid.vapour
+    return vapour is not None and vapour.density_kg_m3 is None
+
+
+def blanket_unread(model: Model, by: str) -> Notice:
+    """Refuse where the readings leave the surface open: an unread pressure above the liquid."""
+    relief = model.case.tank.relief_pa
+    if relief is None or model.case.shape:
+        return unread_blanket(model, None)
+    outside = model.case.conditions.outside_pa(model.vapour_at_m)
+    levels = []
+    for gauge_pa in relief:
+        at = State(np.asarray(0.0), np.ones(()), np.asarray(outside + gauge_pa))
+        levels.append(float(level_behind(model, by, at)))
+    return unread_blanket(model, (levels[0], levels[1]))
