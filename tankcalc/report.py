@@ -117,22 +117,25 @@ def wrapped(text: str) -> list[str]:
 def budget_table(budget: Budget, system: units.System) -> str:
     """Return an uncertainty budget as text: every input's share, the largest first."""
     keys = (("level_m", "length"), ("volume_m3", "volume"), ("mass_kg", "mass"))
-    lines = [f"{'Uncertainty (k = 1)':<20}{'of it':>14}{'level':>14}{'volume':>15}{'mass':>15}"]
+    lines = [_cells("Input, k = 1", "of it", "level", "volume", "mass")]
     for share in budget.shares:
         own = units.show(share.uncertainty, share.dimension, system)
         name = share.name + ("" if share.stated else " *")
-        cells = [units.show(abs(share.contributions[k]), d, system) for k, d in keys]
-        lines.append(f"{name:<20}{own:>14}{cells[0]:>14}{cells[1]:>15}{cells[2]:>15}")
-    totals = [units.show(budget.standard[k], d, system) for k, d in keys]
-    lines.append(f"{'combined':<34}{totals[0]:>14}{totals[1]:>15}{totals[2]:>15}")
-    expanded = [units.show(budget.expanded[k], d, system) for k, d in keys]
-    lines.append(f"{'expanded, k = 2':<34}{expanded[0]:>14}{expanded[1]:>15}{expanded[2]:>15}")
+        shown = (units.show(abs(share.contributions[k]), d, system) for k, d in keys)
+        lines.append(_cells(name, own, *shown))
+    for name, held in (("combined", budget.standard), ("expanded, k = 2", budget.expanded)):
+        lines.append(_cells(name, "", *(units.show(held[k], d, system) for k, d in keys)))
     if budget.shares:
         name = budget.shares[0].name
         gain = units.show(budget.gain_of_halving(name), "mass", system)
         lines.append(f"Halving the uncertainty of {name} buys {gain} of mass (k = 2).")
     lines.append("* not stated by the site: common practice was taken")
     return "\n".join(lines)
+
+
+def _cells(name: str, own: str, level: str, volume: str, mass: str) -> str:
+    """Return one row of a budget."""
+    return f"{name:<18}{own:>13}{level:>17}{volume:>15}{mass:>15}"
 
 
 def terms_table(terms: tuple[Term, ...], system: units.System) -> str:

@@ -106,6 +106,24 @@ def readings_from_text(tank: Tank, typed: Mapping[str, str]) -> tuple[Readings, 
     return Readings(**values, signals=tuple(signals)), problems
 
 
+def typed_units(typed: Mapping[str, str]) -> dict[str, str]:
+    """Return the unit that each pressure, level or ullage was typed in; what has none is left out.
+
+    A unit slip can then only be out of that unit.
+    """
+    found = {}
+    for name, text in typed.items():
+        if name in PRESSURES or name in ("level", "ullage"):
+            dimensions = ("pressure", "current", "fraction") if name in PRESSURES else ("length",)
+            try:
+                quantity = units.parse_any(text, dimensions)
+            except QuantityError:
+                continue  # it was refused when it was read
+            if quantity.dimension in ("pressure", "length"):
+                found[name] = quantity.unit
+    return found
+
+
 def _value(tank: Tank, field: Field, text: str) -> Any:
     if field.target == "temperatures":
         return _temperatures(tank, text)

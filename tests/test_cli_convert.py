@@ -185,3 +185,28 @@ def test_help_and_version(capsys: pytest.CaptureFixture[str]) -> None:
         code, out, _ = call(capsys, *words)
         assert code == 0
         assert "usage: tankcalc" in out
+
+
+def test_a_unit_slip_is_named_among_the_faults_that_would_reconcile(
+    site: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    words = ("--profiles", str(site), "convert", "V-1", "--p1", "13.888 bar", "--level", "12 m")
+    code, out, _ = call(capsys, *words)
+    assert code == 3
+    assert "p1 was typed in bar but is in psi: then 12.000 m" in out
+    assert out.count("was typed in") == 1
+    code, out, _ = call(capsys, *words, "--json")
+    (first, *_) = json.loads(out)["explanations"]
+    assert (first["code"], first["reading"]) == ("unit", "p1")
+    assert first["level_m"] == pytest.approx(12.0, abs=1e-3)
+
+
+def test_budget_and_terms_are_readable_tables(
+    site: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    words = ("--profiles", str(site), "convert", "V-1", "--p1", f"{P1} Pa", "--budget", "--terms")
+    code, out, _ = call(capsys, *words)
+    assert code == 0
+    for wanted in ("+/-", "Input, k = 1", "density *", "expanded, k = 2", "Left out"):
+        assert wanted in out
+    assert max(len(line) for line in out.splitlines()) <= 80

@@ -58,7 +58,7 @@ def run(args: argparse.Namespace) -> int:
     result = answer(tank, fluid, typed)
     readings, system = readings_from(tank, typed), system_from(args, site)
     doubted = result.status == "refused" or any(n.code in DOUBTS for n in result.warnings)
-    found = explain(tank, fluid, readings) if doubted else None
+    found = explain(tank, fluid, readings, typed) if doubted else None
     if args.json:
         _print_json(result, found)
     else:
@@ -69,11 +69,14 @@ def run(args: argparse.Namespace) -> int:
     return 0
 
 
-def explain(tank: Tank, fluid: Fluid, readings: Readings) -> Disagreement | None:
+def explain(
+    tank: Tank, fluid: Fluid, readings: Readings, typed: dict[str, str]
+) -> Disagreement | None:
     """Return which single faults would reconcile the readings, None where nothing can be said."""
     from tankcalc.consistency import explain as explained
+    from tankcalc.typed import typed_units
 
-    found = explained(tank, fluid, readings)
+    found = explained(tank, fluid, readings, typed_units=typed_units(typed))
     return found if found.explanations else None
 
 

@@ -224,11 +224,13 @@ class Actions:
     def _agreement(self, width: int) -> list[Line]:
         """Return whether the readings agree, and which single faults would make them."""
         from tankcalc.consistency import explain, words
+        from tankcalc.typed import typed_units
 
         answer = self._app.front.answer
         if answer.tank is None or answer.fluid is None or answer.readings is None:
             return []
-        found = explain(answer.tank, answer.fluid, answer.readings)
+        meant = typed_units(answer.typed)
+        found = explain(answer.tank, answer.fluid, answer.readings, typed_units=meant)
         lines: list[Line] = []
         for line in words(found, self._desk.units):
             lines += wrapped(line, "", width)
