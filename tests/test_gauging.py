@@ -15,7 +15,7 @@ from tankcalc.fluids.expansion import Expansion
 from tankcalc.fluids.samples import Samples
 from tankcalc.fluids.vapour import Vapour
 from tankcalc.gauging import evaluate
-from tankcalc.geometry import FlatEnd, sphere, strapped, vertical_cylinder
+from tankcalc.geometry import EllipsoidalEnd, FlatEnd, sphere, strapped, vertical_cylinder
 from tankcalc.instruments import (
     Accuracy,
     DifferentialTransmitter,
@@ -593,3 +593,38 @@ def test_a_gas_leg_of_unknown_temperature_costs_only_its_own_reading() -> None:
 def test_a_mass_beside_a_level_is_compared() -> None:
     found = evaluate(upright(), single(850.0), Readings(level_m=8.0, mass_kg=1000.0))
     assert codes(found) == {"disagreement"}
+
+
+def test_three_pressures_in_a_sphere_by_the_closed_formulas() -> None:
+    # rho and h by the equations for uniform density, vents at their own instruments.
+    tank = upright(vessel=sphere(12.0), transmitters=transmitters(p1=0.3, p2=2.3, p3=11.9))
+    g, ra, rv, z1, z2, z3 = 9.81, 1.2, 2.5, 0.3, 2.3, 11.9
+    p1, p2, p3 = 58_000.0, 48_200.0, 4_000.0
+    rho = (p1 - p2) / (g * (z2 - z1)) + ra
+    h = ((p1 - p3) / g + rho * z1 - rv * z3 + ra * (z3 - z1)) / (rho - rv)
+    found = evaluate(
+        tank, single(510.0, vapour=HEAVY_VAPOUR), Readings(p1_pa=p1, p2_pa=p2, p3_pa=p3)
+    )
+    volume = np.pi * h**2 * (18.0 - h) / 3.0
+    assert found.level_m == pytest.approx(h, abs=1e-9)
+    assert found.volume_m3 == pytest.approx(volume, rel=1e-9)
+    assert found.mass_kg == pytest.approx(rho * volume, rel=1e-9)
+
+
+def test_a_dip_in_a_dished_vessel_with_an_absolute_p1_and_a_gauge_p3() -> None:
+    # Mean density by the difference of the two pressures in one frame; volume of the dish closed.
+    vessel = vertical_cylinder([(6.0, 4.0)], EllipsoidalEnd(), FlatEnd())
+    fittings = {
+        "p1": Transmitter("p1", 0.2, "absolute"),
+        "p3": Transmitter("p3", 6.0, "gauge", vent_elevation_m=1.0),
+    }
+    tank = upright(vessel=vessel, transmitters=fittings)
+    g, ra, barometer, h = 9.81, 1.2, 100_200.0, 4.4
+    p1, p3 = 142_000.0, 3_000.0
+    above = p3 + barometer - ra * g * 1.0
+    rho = ((p1 - above) / g - ra * (6.0 - h)) / (h - 0.2)
+    read = Readings(p1_pa=p1, p3_pa=p3, level_m=h, barometer_pa=barometer)
+    found = evaluate(tank, single(900.0), read)
+    volume = 2.0 / 3.0 * np.pi * 4.0 * 1.0 + np.pi * 4.0 * h
+    assert found.density_kg_m3 == pytest.approx(rho, rel=1e-9)
+    assert found.mass_kg == pytest.approx(rho * volume, rel=1e-9)
