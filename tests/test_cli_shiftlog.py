@@ -175,6 +175,7 @@ def test_a_reading_is_held_against_the_one_before(
     assert says in said.err
     _, entry = terminal.listed()
     assert entry["result"]["status"] == "check"
+    assert entry["moving"] == (second[3] if len(second) > 2 else None)
     assert any(says in warning["message"] for warning in entry["result"]["warnings"])
 
 

@@ -43,6 +43,7 @@ def as_object(row: Row) -> dict[str, Any]:
         "tank": entry.tank,
         "fluid": entry.fluid,
         "note": entry.note,
+        "moving": entry.movement or None,
         "amends": None if entry.ref is None else show_uid(entry.ref),
         "reason": entry.reason,
         "readings": dict(entry.typed),
