@@ -301,7 +301,7 @@ def _notices(
     if _expands(fitted):
         legs_k = model.case.conditions.leg_temperature_k
         where = "the temperature its density is stated at, as no other is known"
-        if legs_k is not None:
+        if legs_k is not None and model.case.legs_known_by != "assumed":
             where = f"{legs_k - ICE_POINT_K:.1f} degC"
         message = f"The fill of {tag}'s legs is taken at {where}: see --leg-temperature."
         found.append(Notice("leg_temperature", message, tag))

@@ -119,8 +119,7 @@ def typed_units(typed: Mapping[str, str]) -> dict[str, str]:
                 quantity = units.parse_any(text, dimensions)
             except QuantityError:
                 continue  # it was refused when it was read
-            if quantity.dimension in ("pressure", "length"):
-                found[name] = quantity.unit
+            found[name] = quantity.unit
     return found
 
 

@@ -28,6 +28,7 @@ from tankcalc.instruments import (
 from tankcalc.readings import Readings
 from tankcalc.result import JSON_KEYS, Result, as_json
 from tankcalc.tank import FloatingRoof, Shell, Tank
+from tankcalc.uncertainty import assess
 
 
 def codes(result: Result) -> set[str]:
@@ -628,3 +629,76 @@ def test_a_dip_in_a_dished_vessel_with_an_absolute_p1_and_a_gauge_p3() -> None:
     volume = 2.0 / 3.0 * np.pi * 4.0 * 1.0 + np.pi * 4.0 * h
     assert found.density_kg_m3 == pytest.approx(rho, rel=1e-9)
     assert found.mass_kg == pytest.approx(rho * volume, rel=1e-9)
+
+
+def sharp(**elevations: float) -> dict[str, Transmitter]:
+    """Gauge transmitters with a stated accuracy of 30 Pa."""
+    return {
+        tag: Transmitter(tag, z, "gauge", accuracy=Accuracy(fixed=30.0))
+        for tag, z in elevations.items()
+    }
+
+
+@pytest.mark.parametrize("pascal", [-60.0, 0.0, 3.0, 60.0])
+def test_a_bare_tap_and_one_just_covered_cannot_be_told_apart(pascal: float) -> None:
+    found = evaluate(upright(transmitters=sharp(p1=0.5)), single(850.0), Readings(p1_pa=pascal))
+    assert codes(found) == {"below_tap"}
+    low, high = found.bounds["level_m"]
+    assert (low, high) == (0.0, pytest.approx(0.5 + 90.0 / (9.81 * 850.0), abs=1e-6))
+
+
+def test_a_surface_at_the_upper_tap_is_not_pinned_there() -> None:
+    tank = upright(transmitters=sharp(p1=0.5, p2=3.5, p3=11.8))
+    true = evaluate(tank, single(850.0), Readings(level_m=13.0, p3_pa=2000.0))
+    read = Readings(p1_pa=true.p1_pa, p2_pa=true.p2_pa, p3_pa=true.p3_pa)
+    found = evaluate(tank, single(850.0), read)
+    assert found.status == "refused"
+    low, high = found.bounds["level_m"]
+    assert low < 11.8 < 13.0 < high
+
+
+def test_an_impossible_density_is_the_only_thing_said_of_it() -> None:
+    tank = upright(transmitters=sharp(p1=0.5, p2=3.5, p3=11.8))
+    found = evaluate(tank, single(850.0), Readings(p1_pa=46_868.0, p2_pa=46_867.0, p3_pa=1025.0))
+    assert codes(found) == {"density_impossible"}
+    assert found.bounds == {}
+
+
+def test_legs_of_unknown_temperature_are_said_and_uncertain() -> None:
+    leg = FilledLeg(-2.0, 960.0, 298.15, 1.08e-3)
+    fitted = {"p1": Transmitter("p1", 0.5, "gauge", accuracy=Accuracy(30.0), leg=leg)}
+    unknown = upright(transmitters=fitted, surroundings=around(air_temperature_k=None))
+    found = evaluate(unknown, single(850.0), Readings(p1_pa=90_000.0))
+    assert codes(found) == {"leg_temperature_assumed"}
+    wide = assess(unknown, single(850.0), Readings(p1_pa=90_000.0))
+    narrow = assess(unknown, single(850.0), Readings(p1_pa=90_000.0, leg_temperature_k=298.15))
+    assert wide is not None
+    assert narrow is not None
+    assert wide.standard["level_m"] > narrow.standard["level_m"]
+
+
+def test_no_element_in_the_liquid_is_said() -> None:
+    oil = single(Expansion(845.0, 288.15, 8.3e-4))
+    hung = Readings(p1_pa=40_000.0, temperatures=((8.0, 308.15),))
+    assert "no_element_in_liquid" in codes(evaluate(upright(), oil, hung))
+
+
+def test_an_uncertain_signal_is_worth_less() -> None:
+    p1 = Transmitter("p1", 0.5, "gauge", range_pa=(0.0, 1e5), accuracy=Accuracy(30.0))
+    fitted = {"p1": p1}
+    plain = assess(upright(transmitters=fitted), single(850.0), Readings(p1_pa=98_000.0))
+    doubted = Readings(p1_pa=98_000.0, signals=(("p1", "uncertain"),))
+    wide = assess(upright(transmitters=fitted), single(850.0), doubted)
+    assert plain is not None
+    assert wide is not None
+    assert wide.standard["level_m"] > 10.0 * plain.standard["level_m"]
+
+
+def test_a_given_mass_is_as_good_as_given_and_its_level_is_not() -> None:
+    budget = assess(upright(), single(850.0), Readings(mass_kg=400_000.0))
+    assert budget is not None
+    assert budget.standard["mass_kg"] == pytest.approx(0.0, abs=1e-6)
+    assert budget.standard["level_m"] > 0.001
+    by_volume = assess(upright(), single(850.0), Readings(volume_m3=400.0))
+    assert by_volume is not None
+    assert by_volume.standard["volume_m3"] == pytest.approx(0.0, abs=1e-9)

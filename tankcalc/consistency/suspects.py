@@ -26,7 +26,15 @@ from tankcalc.readings import Readings
 from tankcalc.tank import Tank
 
 CONTRADICTIONS = frozenset(
-    {"above_top", "below_tap", "p3_covered", "level_outside", "ullage_outside", "volume_outside"}
+    {
+        "above_top",
+        "below_tap",
+        "density_impossible",
+        "p3_covered",
+        "level_outside",
+        "ullage_outside",
+        "volume_outside",
+    }
 )
 """Refusals that say that a reading and the tank contradict each other."""
 

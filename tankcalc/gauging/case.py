@@ -13,7 +13,7 @@ from tankcalc.fluids.column import Column
 from tankcalc.fluids.fluid import Fluid
 from tankcalc.gauging.liquid import Liquid, liquid_in
 from tankcalc.hydrostatics import Filling
-from tankcalc.instruments import Conditions
+from tankcalc.instruments import Conditions, FilledLeg
 from tankcalc.readings import Readings
 from tankcalc.tank import Tank
 
@@ -62,7 +62,7 @@ class Case:
             gravity_m_s2=around.gravity_m_s2,
             air_density_kg_m3=around.air_density_kg_m3,
             barometer_pa=_first(readings.barometer_pa, around.outside_pressure_pa) or 0.0,
-            leg_temperature_k=_first(readings.leg_temperature_k, air_k),
+            leg_temperature_k=_first(readings.leg_temperature_k, air_k, _stated_fill_k(tank)),
         )
         values = {name: getattr(readings, name) for name in ARRAY_FIELDS}
         given = {
@@ -84,10 +84,29 @@ class Case:
         """The column standing in the vessel."""
         return Filling(self.tank.vessel, self.column, self.conditions.gravity_m_s2)
 
+    @property
+    def legs_known_by(self) -> str:
+        """How the legs' temperature is known: "read", "air", "assumed", or "" with no such leg."""
+        if _stated_fill_k(self.tank) is None:
+            return ""
+        if self.readings.leg_temperature_k is not None:
+            return "read"
+        air = (self.readings.air_temperature_k, self.tank.surroundings.air_temperature_k)
+        return "assumed" if air == (None, None) else "air"
+
     def fitted(self) -> tuple[str, ...]:
         """Return the tags of the fitted transmitters."""
         tags = tuple(tag for tag in ("p1", "p2", "p3") if tag in self.tank.transmitters)
         return (*tags, "dp") if self.tank.dp is not None else tags
+
+
+def _stated_fill_k(tank: Tank) -> float | None:
+    """Return the temperature (K) at which the fill of a leg is stated, None without such a leg."""
+    legs = [t.leg for t in tank.transmitters.values() if isinstance(t.leg, FilledLeg)]
+    sides = [] if tank.dp is None else [tank.dp.high, tank.dp.low]
+    stated = [leg.fill_density_at_k for leg in legs if leg.fill_expansion_per_k]
+    stated += [side.fill_density_at_k for side in sides if side.fill_expansion_per_k]
+    return _first(*stated)
 
 
 def _first(*values: float | None) -> float | None:

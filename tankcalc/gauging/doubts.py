@@ -52,7 +52,7 @@ def doubts(
         Rows that have no answer; nothing is said of them.
     """
     case, level_m = model.case, state.surface_m
-    notices = [*_surroundings(case), *_vapour(found), *_uncomputed(case)]
+    notices = [*_surroundings(case), *_legs(case), *_vapour(found), *_uncomputed(case)]
     water, water_above = _water(case, level_m, ~refused)
     kept = ~refused & ~water_above
     notices += [*water, *_density(case, level_m, kept), *_limits(case, level_m, kept)]
@@ -98,6 +98,16 @@ def _vapour(found: Found) -> Iterator[Notice]:
             "p3 was not read: what the transmitters should read is given for outside pressure "
             "above the liquid.",
             "p3",
+        )
+
+
+def _legs(case: Case) -> Iterator[Notice]:
+    if case.legs_known_by == "assumed":
+        yield Notice(
+            "leg_temperature_assumed",
+            "Nothing states the temperature of the legs: their fill is taken as stated. Give the "
+            "leg's or the air's temperature.",
+            "leg_temperature",
         )
 
 

@@ -19,6 +19,9 @@ from tankcalc.readings import Readings
 from tankcalc.result import Notice, Result, Status
 from tankcalc.tank import Tank
 
+REMARKS = frozenset({"vapour_pressure_assumed"})
+"""Notices that are no doubt of the answer: it does not rest on what they say."""
+
 _FLOATING_ROOF = Notice(
     "floating_roof",
     "The tank has a floating roof: what it displaces and weighs is not computed by this version, "
@@ -89,7 +92,7 @@ def _result(model: Model, found: Found, refused: BoolArray, notices: tuple[Notic
     shown: dict[str, Any] = {
         name: None if value is None else _plain(value, refused) for name, value in figures.items()
     }
-    status: Status = "check" if notices else "good"
+    status: Status = "check" if any(n.code not in REMARKS for n in notices) else "good"
     return Result(
         tank=case.tank.name,
         fluid=case.fluid.name,

@@ -12,7 +12,6 @@ from tankcalc.gauging.estimate import FACTOR
 from tankcalc.gauging.model import Model
 from tankcalc.gauging.observations import UNSTATED_DENSITY_KG_M3
 from tankcalc.gauging.state import Found
-from tankcalc.instruments import FilledLeg
 
 GRAVITY_SHARE = {"value": 1e-5, "latitude": 5e-5, "standard": 1.5e-3}
 """Relative standard uncertainty of gravity: measured; normal gravity against the true local value
@@ -41,8 +40,9 @@ TEMPERATURE_K = 0.5
 ASSUMED_TEMPERATURE_K = 5.0
 """The same where the temperature was not read but taken from the air, K."""
 
-LEG_TEMPERATURE_K = 3.0
-"""Standard uncertainty of a leg's mean temperature, K (common practice, no source)."""
+LEG_TEMPERATURE_K = {"read": 3.0, "air": 5.0, "assumed": 15.0}
+"""Standard uncertainty of a leg's mean temperature, K: read; taken from the air; nothing known
+of it (common practice, no source)."""
 
 WATER_LEVEL_M = {True: 0.003, False: 0.05}
 """Standard uncertainty of the free water's top: read; taken from the profile, m."""
@@ -158,15 +158,10 @@ def _elevations(case: Case, used: set[str]) -> Iterator[Input]:
 
 
 def _legs(case: Case) -> Iterator[Input]:
-    legs = [t.leg for t in case.tank.transmitters.values() if isinstance(t.leg, FilledLeg)]
-    sides = [] if case.tank.dp is None else [case.tank.dp.high, case.tank.dp.low]
-    expands = any(leg.fill_expansion_per_k for leg in legs) or any(
-        side.fill_expansion_per_k for side in sides
-    )
-    if expands and case.conditions.leg_temperature_k is not None:
-        yield Input(
-            "leg temperature", "leg", LEG_TEMPERATURE_K, "temperature_difference", stated=False
-        )
+    known = case.legs_known_by
+    if known:
+        kelvin = LEG_TEMPERATURE_K[known]
+        yield Input("leg temperature", "leg", kelvin, "temperature_difference", stated=False)
 
 
 def _density(model: Model, found: Found) -> Iterator[Input]:

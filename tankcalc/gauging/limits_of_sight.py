@@ -8,8 +8,13 @@ import numpy as np
 
 from tankcalc.gauging.case import BoolArray, FloatArray
 from tankcalc.gauging.model import Model, State
+from tankcalc.gauging.observations import pressure_uncertainty
 from tankcalc.gauging.words import length, pressure
+from tankcalc.instruments import DifferentialTransmitter
 from tankcalc.result import Bounds, Notice
+
+TELLING = 3.0
+"""A surface within this many standard uncertainties of a tap cannot be told from a bare tap."""
 
 ROUNDING_M = 1e-9
 """Surfaces this close to an end of the vessel are taken to be there, m."""
@@ -41,6 +46,24 @@ def contradictions(model: Model, tag: str, state: State, unknown: BoolArray) -> 
     return tuple(_contradictions(model, tag, state, unknown))
 
 
+def sight_m(model: Model, tag: str, state: State) -> FloatArray:
+    """Return how well a pressure tells a surface near its tap: its standard uncertainty, m.
+
+    Zero where the accuracy of the transmitter is not stated: nothing is then known of it.
+    """
+    case, dp = model.case, model.case.tank.dp
+    fitted = dp if tag == "dp" and dp is not None else case.tank.transmitters[tag]
+    if fitted.accuracy is None:
+        return np.zeros(case.shape)
+    reading = np.broadcast_to(case.given[f"{tag}_pa"], case.shape)
+    if isinstance(fitted, DifferentialTransmitter):
+        tap_m = fitted.high.elevation_m
+    else:
+        tap_m = fitted.elevation_m
+    per_metre = model.gravity * model.density(np.full(case.shape, tap_m), state)
+    return np.asarray(pressure_uncertainty(case, fitted, reading) / per_metre)
+
+
 def _contradictions(model: Model, tag: str, state: State, unknown: BoolArray) -> Iterator[Notice]:
     case, level = model.case, state.surface_m
     vessel, dp = case.tank.vessel, case.tank.dp
@@ -51,20 +74,24 @@ def _contradictions(model: Model, tag: str, state: State, unknown: BoolArray) ->
     else:
         low_m, high_m = case.tank.transmitters[tag].elevation_m, model.vapour_at_m
         upper = "p3"
+    near = TELLING * sight_m(model, tag, state)
     above = (level > vessel.z_max + ROUNDING_M) | unknown
-    below = ~(level > low_m) & ~unknown
-    covered = (level > high_m + ROUNDING_M) & ~above
+    below = ~(level > low_m + near) & ~unknown
+    # A tap at the top of the vessel is covered by no level there is.
+    margin = near if high_m < vessel.z_max - ROUNDING_M else -ROUNDING_M
+    covered = (level > high_m - margin) & ~above & ~below
 
     def would_read(surface_m: float) -> str:
         at = State(np.full(case.shape, surface_m), np.ones(case.shape), state.vapour_pa)
         return pressure(float(np.ravel(model.expected(tag, at))[0]))
 
     if np.any(below):
-        bounds = bounds_between(model, vessel.z_min, min(max(low_m, vessel.z_min), vessel.z_max))
+        edge = low_m + float(np.max(near))
+        bounds = bounds_between(model, vessel.z_min, min(max(edge, vessel.z_min), vessel.z_max))
         low, high = bounds["volume_m3"]
         message = (
             f"{_shown(tag, reading, below)} is no more than {tag} shows with liquid just at its "
-            f"tap ({would_read(low_m)}): the level is below {length(low_m)}, the volume between "
+            f"tap ({would_read(low_m)}): the level is below {length(edge)}, the volume between "
             f"{low:.6g} and {high:.6g} m3. A dip would settle it."
         )
         yield refusal("below_tap", message, tag, below, bounds)
@@ -76,9 +103,11 @@ def _contradictions(model: Model, tag: str, state: State, unknown: BoolArray) ->
         )
         yield refusal("above_top", message, tag, above)
     if np.any(covered):
-        bounds = bounds_between(model, max(high_m, vessel.z_min), vessel.z_max)
+        bounds = bounds_between(
+            model, max(high_m - float(np.max(near)), vessel.z_min), vessel.z_max
+        )
         message = (
-            f"The surface would be above {upper} at {length(high_m)}: {upper} is then under "
+            f"The surface would be at {upper}, {length(high_m)}, or above: {upper} is then under "
             "liquid and the two pressures no longer say where the surface is. Give a dip."
         )
         yield refusal("p3_covered", message, "p3" if tag != "dp" else tag, covered, bounds)

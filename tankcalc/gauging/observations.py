@@ -19,6 +19,10 @@ UNSTATED_OF_SPAN = 0.001
 """Standard uncertainty of a transmitter with a range but no accuracy, as a share of its span
 (common practice, no source)."""
 
+UNCERTAIN_SIGNAL = 0.05
+"""Standard uncertainty of a signal between the measuring range and failure, as a share of span:
+about the width of those bands (common practice, no source)."""
+
 UNSTATED_DIP_M = 0.003
 """Standard uncertainty of a dip or a level gauge of unstated accuracy (common practice, no
 source), m."""
@@ -102,7 +106,11 @@ def pressure_uncertainty(
     if fitted.range_pa is not None:
         unstated = UNSTATED_OF_SPAN * (fitted.range_pa[1] - fitted.range_pa[0])
     ambient = case.conditions.leg_temperature_k
-    return accuracy_of(fitted.accuracy, reading, fitted.range_pa, ambient, unstated)
+    own = accuracy_of(fitted.accuracy, reading, fitted.range_pa, ambient, unstated)
+    if fitted.range_pa is not None and (fitted.tag, "uncertain") in case.readings.signals:
+        low, high = fitted.range_pa
+        own = np.hypot(own, UNCERTAIN_SIGNAL * (high - low))
+    return np.asarray(own)
 
 
 def observations_of(model: Model) -> list[Observation]:

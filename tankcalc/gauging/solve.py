@@ -39,7 +39,7 @@ def solve(tank: Tank, fluid: Fluid, readings: Readings) -> tuple[Model, Found]:
         kept = tuple(p for p in model.case.readings.temperatures if p[0] not in hanging)
         model = Model(Case.of(tank, fluid, replace(model.case.readings, temperatures=kept)))
         found = find_state(model)
-    notices = [*_signals(readings), *_elements(dropped), *found.notices]
+    notices = [*_signals(readings), *_elements(dropped), *_dry(model, found), *found.notices]
     return model, replace(found, notices=tuple(notices))
 
 
@@ -48,6 +48,15 @@ def _hanging(readings: Readings, found: Found) -> list[float]:
     elevations = sorted(z for z, _ in readings.temperatures if z is not None)
     surface = float(found.state.surface_m)
     return [z for z in elevations[1:] if z > surface]
+
+
+def _dry(model: Model, found: Found) -> list[Notice]:
+    """Say so where not even the lowest temperature element is in the liquid."""
+    elevations = [z for z, _ in model.case.readings.temperatures if z is not None]
+    if model.case.shape or not elevations or not min(elevations) > float(found.state.surface_m):
+        return []
+    message = "No temperature element is in the liquid: that of the vapour is taken for it."
+    return [Notice("no_element_in_liquid", message, "temperature")]
 
 
 def _elements(dropped: list[float]) -> list[Notice]:

@@ -108,8 +108,7 @@ def _solved(
         start = replace(start, vapour_pa=np.broadcast_to(model.vent_pa, (rows,)))
     group = found.groups[0] if found.groups else None
     if group is None or group.fit is None:
-        level = base.surface_m + moved.get("level", 0.0) - moved.get("ullage", 0.0)
-        return replace(start, surface_m=np.broadcast_to(level, (rows,)))
+        return replace(start, surface_m=_direct_surface(model, found, factor, moved, rows))
     names = {o.name for o in group.used}
     observations = [o for o in observations_of(model) if o.name in names]
     if "density" in moved and "density" in names:
@@ -118,6 +117,28 @@ def _solved(
             for o in observations
         ]
     return fit(observations, start, group.fit.unknowns).state
+
+
+def _direct_surface(
+    model: Model,
+    found: Found,
+    factor: FloatArray,
+    moved: dict[str, FloatArray],
+    rows: int,
+) -> FloatArray:
+    """Return the surfaces of a given level, volume or mass, with what else it rests on moved."""
+    vessel, given = model.case.tank.vessel, model.case.given
+    size = 1.0 + moved.get("geometry", np.zeros(rows))
+    if found.by == "volume_m3":
+        volume = given["volume_m3"] / size
+        least = float(vessel.volume(vessel.z_min))
+        return np.asarray(vessel.level(np.clip(volume, least, vessel.capacity)))
+    if found.by == "mass_kg":
+        mass = given["mass_kg"] / (size * factor)
+        least, most = model.case.filling.mass(np.array([vessel.z_min, vessel.z_max]))
+        return model.case.filling.level_from_mass(np.clip(mass, least, most))
+    level = found.state.surface_m + moved.get("level", 0.0) - moved.get("ullage", 0.0)
+    return np.broadcast_to(level, (rows,))
 
 
 def _outputs(model: Model, state: State) -> dict[str, FloatArray]:

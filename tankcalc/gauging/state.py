@@ -86,8 +86,14 @@ def find_state(model: Model) -> Found:
         checks = contradictions(model, by, state, unknown)
         if any(group.fit is None for group in groups):
             checks = (blanket_unread(model, by),)
-    checks = (*checks, *impossible_density(model, groups), *too_light(model, state, unknown))
-    if unread and needs_pressure(model) and by not in DIRECT and not found_vapour:
+        if unread and not found_vapour and by != "dp":
+            checks = (blanket_unread(model, by),)
+    impossible = tuple(impossible_density(model, groups))
+    if impossible and not case.shape:
+        checks = impossible  # what follows from such a density is no news
+    else:
+        checks = (*checks, *impossible, *too_light(model, state, unknown))
+    if unread and needs_pressure(model) and by == "dp" and not found_vapour:
         checks = (*checks, blanket_unread(model, by))
     refused = unknown | _rows_of(checks, case.shape)
     return Found(

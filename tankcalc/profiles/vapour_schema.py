@@ -38,6 +38,9 @@ VAPOUR = Table(
 
 def _relief(values: Values, at: At, findings: Findings) -> tuple[float, float] | None:
     vacuum, relief = values["vacuum"], values["relief"]
+    if vacuum > 0.0:
+        findings.add((*at, "vacuum"), "is above zero.", 'Write it as gauge pressure: "-0.5 kPa".')
+        return None
     if not vacuum < relief:
         findings.add((*at, "vacuum"), "is not below the relief pressure.", "Both are gauge.")
         return None

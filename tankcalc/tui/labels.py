@@ -22,10 +22,18 @@ def place(labels: Sequence[Label], rows: Sequence[int], height: int) -> dict[int
     """Return the row of each label that finds room, in the order of their elevations.
 
     ``rows`` says where each would like to lie. The surface is placed first and stays nearest to
-    its row; a limit that finds no room is left out rather than put where it would mislead.
+    its row; of the limits the nearest to it comes next, and one that finds no room is left out
+    rather than put where it would mislead.
     """
     placed: dict[int, Label] = {}
-    order = sorted(range(len(labels)), key=lambda i: (labels[i].rank, -labels[i].elevation_m))
+    at = next((label.elevation_m for label in labels if label.rank == 0), None)
+
+    def matters(i: int) -> tuple[int, float]:
+        """Rank a label: among limits the nearest to the surface is the next to be met."""
+        elevation = labels[i].elevation_m
+        return labels[i].rank, -elevation if at is None else abs(elevation - at)
+
+    order = sorted(range(len(labels)), key=matters)
     for i in order:
         label, wanted = labels[i], rows[i]
         reach = REACH[min(label.rank, len(REACH) - 1)]
