@@ -24,7 +24,7 @@ HEAVIEST_VAPOUR = 0.5
 def first_state(model: Model) -> tuple[State, str, tuple[Notice, ...]]:
     """Return a first state, the reading it comes from, and why there is none."""
     case = model.case
-    vapour, one = vapour_start(model), np.ones(case.shape)
+    vapour, one = vapour_start(model), np.broadcast_to(1.0, case.shape)
     if np.any(vapour <= 0.0):
         nothing = State(np.full(case.shape, np.nan), one, vapour)
         message = "p3 is below a perfect vacuum. Check the unit and the reference."
@@ -61,7 +61,7 @@ def vapour_start(model: Model) -> FloatArray:
         return np.broadcast_to(read, case.shape).astype(float)
     vent = model.vent_pa
     outside = case.conditions.outside_pa(model.vapour_at_m)
-    return np.full(case.shape, outside if vent is None else vent)
+    return np.broadcast_to(outside if vent is None else vent, case.shape)
 
 
 def level_behind(model: Model, tag: str, state: State) -> FloatArray:

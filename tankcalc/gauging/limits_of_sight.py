@@ -54,7 +54,7 @@ def sight_m(model: Model, tag: str, state: State) -> FloatArray:
     case, dp = model.case, model.case.tank.dp
     fitted = dp if tag == "dp" and dp is not None else case.tank.transmitters[tag]
     if fitted.accuracy is None:
-        return np.zeros(case.shape)
+        return np.zeros(())
     reading = np.broadcast_to(case.given[f"{tag}_pa"], case.shape)
     if isinstance(fitted, DifferentialTransmitter):
         tap_m = fitted.high.elevation_m

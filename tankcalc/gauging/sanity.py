@@ -33,10 +33,13 @@ def outside(model: Model, state: State, unknown: BoolArray) -> Iterator[Notice]:
 
 def too_light(model: Model, state: State, unknown: BoolArray) -> Iterator[Notice]:
     """Refuse rows in which an extended density profile has run out below the surface."""
-    bottom, slack = model.case.tank.vessel.z_min, 1e-9
-    surface = np.where(np.isnan(state.surface_m), bottom, state.surface_m)
-    lightest = np.minimum(model.density(surface - slack, state), model.density(surface, state))
+    vessel, slack = model.case.tank.vessel, 1e-9
+    anywhere, _ = model.case.column.extremes(vessel.z_min, vessel.z_max)
     rv = model.vapour_density(state.vapour_pa)
+    if anywhere * float(np.min(state.factor, initial=1.0)) > float(np.max(rv, initial=0.0)):
+        return  # nowhere in the vessel does the profile run out
+    surface = np.where(np.isnan(state.surface_m), vessel.z_min, state.surface_m)
+    lightest = np.minimum(model.density(surface - slack, state), model.density(surface, state))
     light = ~(lightest > rv) & ~unknown & ~np.isnan(state.surface_m)
     if np.any(light):
         message = (
