@@ -314,8 +314,9 @@ def test_two_taps_find_a_liquid_so_heavy_that_one_alone_would_overflow() -> None
 def test_p3_under_liquid_is_refused() -> None:
     tank = upright(transmitters=transmitters(p1=0.5, p3=10.0))
     found = evaluate(tank, single(850.0), Readings(p1_pa=100_000.0, p3_pa=1000.0))
-    assert "p3_covered" in codes(found)
+    assert codes(found) == {"p3_covered"}
     assert found.status == "refused"
+    assert found.bounds["level_m"] == (10.0, 15.0)
 
 
 def test_nothing_that_fixes_the_surface_is_refused() -> None:

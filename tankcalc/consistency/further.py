@@ -56,8 +56,9 @@ def _candidates(inquiry: Inquiry) -> Iterator[tuple[str, float]]:
         felt = tag in ("p3", "dp") or surface > case.tank.transmitters[tag].elevation_m + COVER_M
         if f"{tag}_pa" not in case.given and felt:
             yield f"{tag}_pa", float(model.expected(tag, state)[0])
-    if case.readings.density_kg_m3 is None:
-        yield "density_kg_m3", float((state.factor * model.product.density(state.surface_m))[0])
+    density = float((state.factor * model.product.density(state.surface_m))[0])
+    if case.readings.density_kg_m3 is None and density > 0.0:  # none inside the free water
+        yield "density_kg_m3", density
 
 
 def _would_check(inquiry: Inquiry, values: dict[str, Any]) -> bool:

@@ -124,20 +124,14 @@ def choices(model: Model) -> tuple[tuple[int, ...], ...]:
 def _unused(
     every: Sequence[Observation], pattern: Sequence[bool], where: BoolArray
 ) -> Iterator[Notice]:
-    """Say which readings were of no use, and why."""
-    shown = where if where.ndim else None
+    """Say where p2 was of no use; a drowned p3 is told when the surface is known."""
     for observation, use in zip(every, pattern, strict=True):
-        if use or observation.name not in ("p2", "p3"):
-            continue
-        if observation.name == "p2":
+        if observation.name == "p2" and not use:
             message = (
                 "p2's tap is not safely under liquid: it says nothing of the density, which is "
                 "taken from the profile or the other readings."
             )
-            yield Notice("p2_uncovered", message, "p2", where=shown)
-        else:
-            message = "p3's tap is under liquid: it does not show the pressure above it."
-            yield Notice("p3_covered", message, "p3", where=shown)
+            yield Notice("p2_uncovered", message, "p2", where=where if where.ndim else None)
 
 
 def merged(start: State, groups: Sequence[Group]) -> State:

@@ -89,3 +89,16 @@ def blanket_unread(model: Model, by: str) -> Notice:
         at = State(np.asarray(0.0), np.ones(()), np.asarray(outside + gauge_pa))
         levels.append(float(level_behind(model, by, at)))
     return unread_blanket(model, (levels[0], levels[1]))
+
+
+def unsettled(groups: Sequence[Group], seen: BoolArray) -> Iterator[Notice]:
+    """Refuse rows in which the readings do not determine the surface and nothing else says so."""
+    rows = np.zeros(seen.size, dtype=bool)
+    for group in groups:
+        if group.fit is None:
+            rows |= group.rows
+    left = rows.reshape(seen.shape) & ~seen
+    if np.any(left):
+        yield refusal(
+            "not_settled", "The readings do not settle the surface. Give a dip.", "", left
+        )

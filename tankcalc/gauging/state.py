@@ -20,6 +20,7 @@ from tankcalc.gauging.sanity import (
     needs_pressure,
     outside,
     too_light,
+    unsettled,
 )
 from tankcalc.gauging.words import listed
 from tankcalc.result import Notice
@@ -81,20 +82,7 @@ def find_state(model: Model) -> Found:
         state = merged(start, groups)
     unread = model.vent_pa is None and "p3_pa" not in case.given
     found_vapour = any(g.fit and VAPOUR in g.fit.unknowns for g in groups)
-    checks: tuple[Notice, ...] = tuple(outside(model, state, unknown)) if by in DIRECT else ()
-    if by not in DIRECT:
-        checks = contradictions(model, by, state, unknown)
-        if any(group.fit is None for group in groups):
-            checks = (blanket_unread(model, by),)
-        if unread and not found_vapour and by != "dp":
-            checks = (blanket_unread(model, by),)
-    impossible = tuple(impossible_density(model, groups))
-    if impossible and not case.shape:
-        checks = impossible  # what follows from such a density is no news
-    else:
-        checks = (*checks, *impossible, *too_light(model, state, unknown))
-    if unread and needs_pressure(model) and by == "dp" and not found_vapour:
-        checks = (*checks, blanket_unread(model, by))
+    checks = _refusals(model, by, state, groups, unknown, unread and not found_vapour)
     refused = unknown | _rows_of(checks, case.shape)
     return Found(
         replace(state, surface_m=np.where(refused, np.nan, state.surface_m)),
@@ -104,6 +92,36 @@ def find_state(model: Model) -> Found:
         unread and not found_vapour,
         by,
     )
+
+
+def _refusals(
+    model: Model,
+    by: str,
+    state: State,
+    groups: Sequence[Group],
+    unknown: BoolArray,
+    blind: bool,
+) -> tuple[Notice, ...]:
+    """Return why states that came out are no answers.
+
+    ``blind``: the space above the liquid has a pressure of its own, and nothing told it.
+    """
+    impossible = tuple(impossible_density(model, groups))
+    if impossible and not model.case.shape:
+        return impossible  # what follows from such a density is no news
+    if by in DIRECT:
+        checks = tuple(outside(model, state, unknown))
+    elif blind and by != "dp":
+        checks = (blanket_unread(model, by),)
+    else:
+        checks = contradictions(model, by, state, unknown)
+    checks = (*checks, *impossible, *too_light(model, state, unknown))
+    if blind and by == "dp" and needs_pressure(model):
+        checks = (*checks, blanket_unread(model, by))
+    if by not in DIRECT:
+        seen = unknown | _rows_of(checks, model.case.shape)
+        checks = (*checks, *unsettled(groups, seen))
+    return checks
 
 
 def _closed_form(model: Model, by: str) -> bool:
