@@ -22,7 +22,7 @@ from tankcalc.consistency.plausibility import (
 from tankcalc.consistency.problem import Problem, Solution
 from tankcalc.consistency.refits import Refit, refits
 from tankcalc.fluids.fluid import Fluid
-from tankcalc.gauging.doubts import CHI_SQUARE
+from tankcalc.gauging.comparisons import CHI_SQUARE
 from tankcalc.gauging.model import Model
 from tankcalc.readings import Readings
 from tankcalc.tank import Tank
