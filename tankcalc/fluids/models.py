@@ -113,12 +113,18 @@ class DensityModel(ABC):
         Temperatures outside of which the model refuses, K.
     bulk_modulus_pa : float or None
         Where set, the column is compressed by its own weight.
+    base_k : float or None
+        Temperature of the standard volume where the model states one, K; None: the site's.
+    source : str
+        Whose equations or figures these are, with the edition, for reports.
     """
 
     kind: ClassVar[str]
     needs_temperature: ClassVar[bool] = True
     limits_k: tuple[float, float] = (0.0, float("inf"))
     bulk_modulus_pa: float | None = None
+    base_k: float | None = None
+    source: str = "figures of the fluid file"
 
     @abstractmethod
     def density(self, temperature_k: FloatArray) -> FloatArray:
@@ -141,6 +147,35 @@ class DensityModel(ABC):
                 f"({low - ICE_POINT_K:.2f} to {high - ICE_POINT_K:.2f} degC)."
             )
         return self.density(temperature_k)
+
+    def standard_density(
+        self, observed_kg_m3: FloatArray, temperature_k: FloatArray, base_k: float
+    ) -> FloatArray:
+        """Return the density at a base temperature of a liquid observed at another, kg/m3.
+
+        Parameters
+        ----------
+        observed_kg_m3, temperature_k : array
+            Density at the temperature (K); of one shape, or broadcasting.
+        base_k : float
+            Base temperature, K.
+
+        Raises
+        ------
+        RangeError
+            A temperature lies outside ``limits_k``, or the density outside the model's range.
+
+        Notes
+        -----
+        An observed density other than the model's own scales the whole of its curve.
+        """
+        at_base = self.checked_density(np.asarray(base_k))
+        at_observed = self.checked_density(np.asarray(temperature_k, dtype=float))
+        return np.asarray(observed_kg_m3 * at_base / at_observed)
+
+    def pressure_factor(self, temperature_k: FloatArray, gauge_pa: FloatArray) -> FloatArray:
+        """Return the density against that at outside pressure; 1 unless the model knows better."""
+        return np.ones(np.broadcast_shapes(np.shape(temperature_k), np.shape(gauge_pa)))
 
     def pieces(self, temperatures: Temperatures | None) -> Pieces:
         """Return density over elevation for a liquid at these temperatures."""

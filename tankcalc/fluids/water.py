@@ -84,6 +84,7 @@ class Water(DensityModel):
     """
 
     kind: ClassVar[str] = "water"
+    source: str = "Tanaka et al. 2001 to 40 degC, IAPWS SR6-08(2011) above"
     limits_k: tuple[float, float] = (ICE_POINT_K, ICE_POINT_K + 100.0)
 
     def density(self, temperature_k: FloatArray) -> FloatArray:
