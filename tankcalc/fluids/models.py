@@ -173,6 +173,13 @@ class DensityModel(ABC):
         at_observed = self.checked_density(np.asarray(temperature_k, dtype=float))
         return np.asarray(observed_kg_m3 * at_base / at_observed)
 
+    def of_reference(self, reference_kg_m3: float) -> DensityModel:
+        """Return the model of a liquid with another density at the base temperature, kg/m3.
+
+        The same model where the change with temperature does not depend on that density.
+        """
+        return self
+
     def pressure_factor(self, temperature_k: FloatArray, gauge_pa: FloatArray) -> FloatArray:
         """Return the density against that at outside pressure; 1 unless the model knows better."""
         return np.ones(np.broadcast_shapes(np.shape(temperature_k), np.shape(gauge_pa)))
