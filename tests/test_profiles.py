@@ -416,17 +416,6 @@ def test_every_model_of_this_version_is_read(site: Site) -> None:
     assert read["table"].temperatures_k == pytest.approx((273.15, 293.15))
 
 
-@pytest.mark.parametrize("model", ["petroleum", "ethanol", "solution", "liquefied gas"])
-def test_a_model_of_a_later_version_is_refused_by_name(site: Site, model: str) -> None:
-    write(site.folder, "fluids/x.toml", f'[density]\nmodel = "{model}"\nat = "15 degC"\n')
-    with pytest.raises(ProfileError) as refused:
-        site.fluid("x")
-    assert str(refused.value) == (
-        f'fluids/x.toml:2: density.model: model = "{model}" is not computed by this version. '
-        "Available: constant, expansion, table, water, samples."
-    )
-
-
 LAYERS = """\
 name = "Oil over water"
 

@@ -112,7 +112,7 @@ BY_PINT = {
     },
     "time": {"s": "s", "ms": "ms", "min": "min", "h": "hour", "d": "day"},
     "angle": {"deg": "degree", "rad": "rad"},
-    "fraction": {"1": "", "%": "percent", "ppm": "ppm"},
+    "fraction": {"1": "", "%": "percent", "g/kg": "g/kg", "ppm": "ppm"},
     "dimensionless": {
         "1": "",
         "%": "percent",

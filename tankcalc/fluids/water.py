@@ -1,4 +1,4 @@
-"""Fresh, air-free water at atmospheric pressure."""
+"""Fresh, air-free water and sea water at atmospheric pressure."""
 
 from __future__ import annotations
 
@@ -8,7 +8,14 @@ from typing import ClassVar
 import numpy as np
 
 from tankcalc.constants import ICE_POINT_K
+from tankcalc.errors import InputError
 from tankcalc.fluids.models import DensityModel, FloatArray
+from tankcalc.fluids.sea_water import (
+    LARGEST_SALINITY,
+    conservative_temperature,
+    freezing_c,
+    specific_volume,
+)
 
 # Coefficients a5..a10 with exponents n, and b5..b10 with exponents m: IAPWS SR6-08(2011), Table 1.
 _A = ((0, 1.93763157e-2), (4, 6.74458446e3), (5, -2.22521604e5), (7, 1.00231247e8),
@@ -74,22 +81,65 @@ _SEAM = density_0_to_40_degc(np.array(40.0)) / density_at_0_1_mpa(_AT_40_DEGC)
 
 @dataclass(frozen=True)
 class Water(DensityModel):
-    """Fresh water from 0 to 100 degC.
+    """Fresh water from 0 to 100 degC, or sea water up to 40 degC.
+
+    Parameters
+    ----------
+    salinity : float
+        Absolute salinity, kilograms of salt in a kilogram of water, 0 to 0.042.
+
+    Raises
+    ------
+    InputError
+        A salinity that is not that of sea water.
 
     Notes
     -----
-    The recommended formula of 2001 up to 40 degC, the equation for 0.1 MPa above, scaled by
-    0.9999994 so that the two meet at 40 degC. Dissolved air makes water up to 0.003 kg/m3
+    Fresh: the recommended formula of 2001 up to 40 degC, the equation for 0.1 MPa above, scaled
+    by 0.9999994 so that the two meet at 40 degC. Dissolved air makes water up to 0.003 kg/m3
     lighter, the pressure of 10 m of water 0.04 kg/m3 heavier; both are neglected.
+
+    Salt: TEOS-10 at atmospheric pressure, from the freezing point up; the proportions of the
+    salts are those of the ocean.
+
+    Examples
+    --------
+    >>> import numpy as np
+    >>> round(float(Water(0.035).density(np.array(288.15))), 3)
+    1025.849
     """
 
     kind: ClassVar[str] = "water"
-    source: str = "Tanaka et al. 2001 to 40 degC, IAPWS SR6-08(2011) above"
-    limits_k: tuple[float, float] = (ICE_POINT_K, ICE_POINT_K + 100.0)
+    salinity: float = 0.0
+
+    def __post_init__(self) -> None:
+        if not 0.0 <= self.salinity <= LARGEST_SALINITY:
+            raise InputError(
+                f"a salinity must be between 0 and {LARGEST_SALINITY:g} "
+                f"({1000.0 * LARGEST_SALINITY:g} g/kg): stronger brines are a solution."
+            )
+
+    @property
+    def source(self) -> str:  # type: ignore[override]
+        """Whose equations these are."""
+        if self.salinity:
+            return "TEOS-10, 75-term specific volume of Roquet et al. 2015"
+        return "Tanaka et al. 2001 to 40 degC, IAPWS SR6-08(2011) above"
+
+    @property
+    def limits_k(self) -> tuple[float, float]:  # type: ignore[override]
+        """Temperatures (K) that the equations cover."""
+        if self.salinity:
+            return (ICE_POINT_K + freezing_c(1000.0 * self.salinity), ICE_POINT_K + 40.0)
+        return (ICE_POINT_K, ICE_POINT_K + 100.0)
 
     def density(self, temperature_k: FloatArray) -> FloatArray:
         """Return the density (kg/m3) at temperatures in K, an array of any shape."""
         t_c = np.asarray(temperature_k) - ICE_POINT_K
+        if self.salinity:
+            salinity_g_kg = np.asarray(1000.0 * self.salinity)
+            conservative_c = conservative_temperature(salinity_g_kg, t_c)
+            return 1.0 / specific_volume(salinity_g_kg, conservative_c, np.zeros(()))
         cool = density_0_to_40_degc(np.minimum(t_c, 40.0))
         warm = _SEAM * density_at_0_1_mpa(np.maximum(temperature_k, _AT_40_DEGC))
         return np.where(t_c <= 40.0, cool, warm)

@@ -1,6 +1,7 @@
-"""The density models a fluid file can name: one table of keys for each, and the model built.
+"""The density models a fluid file can name: one table of keys for each.
 
-To add a model, write its module in ``fluids`` and its table here.
+To add a model, write its module in ``fluids``, how it is made in ``density_builders``, and its
+table here.
 """
 
 from __future__ import annotations
@@ -10,15 +11,23 @@ from collections.abc import Callable
 from typing import TYPE_CHECKING, Any, NamedTuple
 
 from tankcalc.errors import InputError
-from tankcalc.profiles.findings import At, Findings
-from tankcalc.profiles.leaves import choice, listed, pair, quantity
+from tankcalc.profiles import density_builders as builders
+from tankcalc.profiles.findings import At, Findings, show
+from tankcalc.profiles.leaves import (
+    UnfitError,
+    choice,
+    fraction,
+    leaf,
+    listed,
+    pair,
+    quantity,
+    text,
+)
+from tankcalc.profiles.shares import foods, gases, shares
 from tankcalc.profiles.tables import ByKind, Table, Values, may, need
 
 if TYPE_CHECKING:
     from tankcalc.fluids.models import DensityModel
-
-NOT_YET = ("petroleum", "ethanol", "solution", "liquefied gas")
-"""Models a profile may name that this version does not compute."""
 
 
 class Stated(NamedTuple):
@@ -26,40 +35,6 @@ class Stated(NamedTuple):
 
     model: DensityModel
     uncertainty_kg_m3: float | None
-
-
-def _constant(values: Values) -> DensityModel:
-    from tankcalc.fluids.constant import Constant
-
-    return Constant(values["value"])
-
-
-def _expansion(values: Values) -> DensityModel:
-    from tankcalc.fluids.expansion import Expansion
-
-    return Expansion(
-        values["reference"], values["at"], values["coefficient"], values["bulk_modulus"]
-    )
-
-
-def _table(values: Values) -> DensityModel:
-    from tankcalc.fluids.table import Table as DensityTable
-
-    temperatures, densities = zip(*values["points"], strict=True)
-    return DensityTable(temperatures, densities)
-
-
-def _water(values: Values) -> DensityModel:
-    from tankcalc.fluids.water import Water
-
-    return Water()
-
-
-def _samples(values: Values) -> DensityModel:
-    from tankcalc.fluids.samples import Samples
-
-    elevations, densities = zip(*values["points"], strict=True)
-    return Samples(elevations, densities, values["beyond"])
 
 
 _DENSITY = quantity("density", "positive")
@@ -93,10 +68,50 @@ def _points_rise(points: list[tuple[float, float]], at: At, findings: Findings) 
     return len(findings) == before
 
 
+def _cells(values: Values, at: At, findings: Findings) -> Values | None:
+    """Return the cells of a grid, noting steps that do not rise and rows that do not fit."""
+    before = len(findings)
+    for key in ("concentrations", "temperatures"):
+        for n, (low, high) in enumerate(itertools.pairwise(values[key]), start=1):
+            if not high > low:
+                findings.add((*at, key, n), "does not rise from the one before it.")
+    rows, wanted = values["densities"], len(values["concentrations"])
+    if len(rows) != wanted:
+        findings.add(
+            (*at, "densities"),
+            f"{len(rows)} rows of densities for {wanted} concentrations.",
+            "Write one row for each concentration.",
+        )
+    for n, row in enumerate(rows):
+        if len(row) != len(values["temperatures"]):
+            findings.add(
+                (*at, "densities", n),
+                f"{len(row)} densities for {len(values['temperatures'])} temperatures.",
+                "Write one density for each temperature.",
+            )
+    return values if len(findings) == before else None
+
+
+def _edition(value: object) -> int:
+    if type(value) is not int or value not in (2004, 1980):
+        raise UnfitError(f"{show(value)} is no edition known here.", "Choose 2004 or 1980.")
+    return value
+
+
+GRID = Table(
+    {
+        "concentrations": need(listed(fraction(), least=2)),
+        "temperatures": need(listed(quantity("temperature"), least=2)),
+        "densities": need(listed(listed(_DENSITY), least=2)),
+    },
+    _cells,
+)
+"""A solution's densities: a row for each concentration, a column for each temperature."""
+
 DENSITY = ByKind(
     "model",
     {
-        "constant": model({"value": need(_DENSITY)}, _constant),
+        "constant": model({"value": need(_DENSITY)}, builders.constant),
         "expansion": model(
             {
                 "reference": need(_DENSITY),
@@ -104,35 +119,60 @@ DENSITY = ByKind(
                 "coefficient": need(quantity("expansion")),
                 "bulk_modulus": may(quantity("pressure", "positive")),
             },
-            _expansion,
+            builders.expansion,
         ),
         "table": model(
-            {"points": need(listed(pair(quantity("temperature"), _DENSITY), least=2))}, _table
+            {"points": need(listed(pair(quantity("temperature"), _DENSITY), least=2))},
+            builders.table,
         ),
-        "water": model({}, _water),
+        "water": model({"salinity": may(fraction(), 0.0)}, builders.water),
+        "petroleum": model(
+            {
+                "group": need(
+                    choice(
+                        "crude",
+                        "fuel oil",
+                        "jet fuel",
+                        "gasoline",
+                        "transition",
+                        "lubricating oil",
+                        "special",
+                    )
+                ),
+                "reference": need(_DENSITY),
+                "at": need(quantity("temperature")),
+                "edition": may(leaf(_edition), 2004),
+                "expansion": may(quantity("expansion", "positive")),
+            },
+            builders.petroleum,
+        ),
+        "ethanol": model({"mass_fraction": need(fraction())}, builders.ethanol),
+        "solution": model(
+            {
+                "concentration": need(fraction()),
+                "grid": need(GRID),
+                "grid_source": need(text(160)),
+                "grid_date": need(text(40)),
+            },
+            builders.solution,
+        ),
+        "liquefied gas": model(
+            {
+                "composition": need(shares(gases, "{ methane = 0.92, ethane = 0.08 }")),
+                "method": may(choice("revised Klosek-McKinley", "saturated")),
+            },
+            builders.liquefied_gas,
+        ),
+        "constituents": model(
+            {"mass_fractions": need(shares(foods, "{ water = 0.88, fat = 0.12 }"))},
+            builders.constituents,
+        ),
         "samples": model(
             {
                 "points": need(listed(pair(quantity("length"), _DENSITY))),
                 "beyond": may(choice("hold", "extend"), "hold"),
             },
-            _samples,
+            builders.samples,
         ),
     },
 )
-
-
-class Density:
-    """``[density]`` of a fluid file."""
-
-    def read(self, value: object, at: At, findings: Findings) -> Any:
-        """Return what is stated of the density, or None after noting what is wrong."""
-        named = value.get("model") if isinstance(value, dict) else None
-        if named in NOT_YET:
-            available = ", ".join(DENSITY.tables)
-            findings.add(
-                (*at, "model"),
-                f'model = "{named}" is not computed by this version.',
-                f"Available: {available}.",
-            )
-            return None
-        return DENSITY.read(value, at, findings)

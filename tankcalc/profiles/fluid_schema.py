@@ -6,7 +6,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from tankcalc.fluids.fluid import Fluid, Layer
-from tankcalc.profiles.density_schema import Density
+from tankcalc.profiles.density_schema import DENSITY
 from tankcalc.profiles.documents import Document
 from tankcalc.profiles.findings import At, Findings, did_you_mean, show
 from tankcalc.profiles.leaves import quantity, text
@@ -22,7 +22,7 @@ _LAYER = Table({"fluid": need(text()), "top": may(quantity("length"))})
 FLUID = Table(
     {
         "name": may(text(40)),
-        "density": may(Density()),
+        "density": may(DENSITY),
         "layer": may(ListOf(_LAYER)),
         "vapour": may(VAPOUR),
     }

@@ -74,10 +74,10 @@ def fraction(low: float = 0.0, high: float = 1.0) -> CoreSchema:
             raise UnfitError(
                 f'a fraction is wanted, such as 0.001 or "0.1 %", found {show(value)}.'
             )
-        share = units.si(value, "fraction") if isinstance(value, str) else float(value)
+        share = units.si(value, "fraction") if isinstance(value, str) else value
         if not low <= share <= high:
             raise UnfitError(f"{show(value)} is not between {low:g} and {high:g}.")
-        return share
+        return float(share)
 
     return leaf(read)
 

@@ -178,6 +178,7 @@ _ROWS: Final[dict[str, tuple[_Row, ...]]] = {
     "fraction": (
         ("1", 1, 1, ""),
         ("%", 1, 100, "percent"),
+        ("g/kg", 1, 1000, ""),
         ("ppm", 1, 1e6, ""),
     ),
     "dimensionless": (
