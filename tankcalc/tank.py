@@ -27,7 +27,11 @@ LIMIT_ORDER = (
 
 @dataclass(frozen=True, slots=True)
 class Shell:
-    """Shell material and the state the dimensions or the table were taken in (SI)."""
+    """Shell material and the state the dimensions or the table were taken in (SI).
+
+    ``courses_m`` are those of a vertical shell, from the bottom up: from, to and internal radius;
+    ``thickness_m`` is one plate for all of them, or one for each.
+    """
 
     expansion_per_k: float | None = None
     calibrated_at_k: float | None = None
@@ -36,11 +40,16 @@ class Shell:
     modulus_pa: float | None = None
     table_density_kg_m3: float | None = None
     material: str = ""
+    courses_m: tuple[tuple[float, float, float], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
 class FloatingRoof:
-    """A floating roof: mass, where it lands and where it floats (kg, m, m)."""
+    """A floating roof: mass, where it lands and where it floats (kg, m, m).
+
+    ``included_at_kg_m3`` is the density at which the capacity table already allows for the roof;
+    None where it does not.
+    """
 
     mass_kg: float
     lands_at_m: float

@@ -24,6 +24,7 @@ if TYPE_CHECKING:
     )
     from tankcalc.geometry.frusta import stack
     from tankcalc.geometry.horizontal import horizontal_cylinder
+    from tankcalc.geometry.loaded import Course, LoadedVessel, Stretch
     from tankcalc.geometry.ovals import oval
     from tankcalc.geometry.rectangular import box
     from tankcalc.geometry.spheres import sphere, spheroid
@@ -33,12 +34,15 @@ if TYPE_CHECKING:
 
 __all__ = [
     "ConeEnd",
+    "Course",
     "DishedEnd",
     "EllipsoidalEnd",
     "End",
     "FlatEnd",
     "HemisphericalEnd",
+    "LoadedVessel",
     "SlopeEnd",
+    "Stretch",
     "TorisphericalEnd",
     "Vessel",
     "box",
@@ -55,6 +59,9 @@ __all__ = [
 ]
 
 _HOMES = {
+    "Course": "loaded",
+    "LoadedVessel": "loaded",
+    "Stretch": "loaded",
     "box": "rectangular",
     "horizontal_cylinder": "horizontal",
     "moved_datum": "datum",

@@ -192,12 +192,7 @@ class Vessel:
             ROUNDING_SHARE * self.capacity,
             ("A volume", "m3", "what the vessel can hold"),
         )
-        wanted = held(wanted, *limits)
-        body = self._body_for(wanted)
-        z = np.empty_like(wanted)
-        for part in chunks(wanted):
-            z[part] = level_of_volume(body, self._ladder, wanted[part])
-        return as_given(volume, z - self.datum)
+        return as_given(volume, self._level(held(wanted, *limits)))
 
     def outline(self) -> Array:
         """Return the closed side view, (n, 2): x to the right and elevation above the datum, m."""
@@ -235,6 +230,13 @@ class Vessel:
             inside[elevations <= self.z_min], inside[elevations >= self.z_max] = low, high
             elevations = inside
         return held(elevations, low, high)
+
+    def _level(self, volume: Array) -> Array:
+        body = self._body_for(volume)
+        z = np.empty_like(volume)
+        for part in chunks(volume):
+            z[part] = level_of_volume(body, self._ladder, volume[part])
+        return z - self.datum
 
     def _area(self, z: Array) -> Array:
         body = self._body_for(z)

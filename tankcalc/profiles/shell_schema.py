@@ -15,19 +15,21 @@ EXPANSION_PER_K = {
     "stainless steel": 1.73e-5,
     "stainless steel 304": 1.73e-5,
     "stainless steel 316": 1.59e-5,
+    "stainless steel 17-4PH": 1.08e-5,
     "aluminium": 2.3e-5,
 }
 """Linear expansion of shell materials, 1/K.
 
 Carbon steel is 6.2e-6 per degF, as tank calibration takes it (API MPMS 12.1.1; from memory, as
-are the figures for 304, 316 and aluminium). "stainless steel" alone is taken as 304.
+are the figures for 304, 316, 17-4PH and aluminium). "stainless steel" alone is taken as 304.
 """
 
 
 def _shell(values: Values, at: At, findings: Findings) -> Shell | None:
     material, expansion = values["material"], values["expansion"]
     if expansion is None and material is not None:
-        expansion = EXPANSION_PER_K.get(material.lower())
+        by_name = {name.lower(): value for name, value in EXPANSION_PER_K.items()}
+        expansion = by_name.get(material.lower())
         if expansion is None:
             findings.add(
                 (*at, "material"),

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from dataclasses import replace
 
+from tankcalc.constants import ICE_POINT_K
 from tankcalc.errors import InputError
 from tankcalc.profiles.findings import At, Findings, nearest, show
 from tankcalc.profiles.leaves import UnfitError, choice, fraction, leaf, quantity, text
@@ -12,6 +13,9 @@ from tankcalc.profiles.source_schema import SITE_SOURCE
 from tankcalc.profiles.tables import Named, Table, Values, may
 from tankcalc.surroundings import Surroundings, surroundings
 from tankcalc.text import clean
+
+STANDARD_K = ICE_POINT_K + 15.0
+"""Base of standard volumes where neither the site nor the liquid's figures state one, K."""
 
 _CLOCK = re.compile(r"([01]\d|2[0-3]):[0-5]\d")
 _STORE = re.compile(r"sqlite|postgres(?:ql)?://\S+|.*[/\\].*|.*\.(?:sqlite3?|db)")
@@ -136,6 +140,7 @@ SITE = Table(
                 _air,
             )
         ),
+        "standard_temperature": may(quantity("temperature"), STANDARD_K),
         "shifts": may(Shifts()),
         "log": may(Table({"store": may(leaf(_store))})),
         "sources": may(Named(SITE_SOURCE)),
@@ -160,6 +165,7 @@ def read_surroundings(values: Values, findings: Findings) -> Surroundings | None
             made,
             gravity_uncertainty_m_s2=gravity.get("uncertainty"),
             air_uncertainty_kg_m3=air.get("uncertainty"),
+            standard_temperature_k=values["standard_temperature"],
         )
     except InputError as error:
         key, _, why = str(error).partition(": ")

@@ -72,10 +72,11 @@ def check_shell(values: Values, findings: Findings) -> None:
     if made is None:
         return
     plates = values["shell"].thickness_m if values["shell"] is not None else ()
-    if len(plates) > 1 and len(plates) != made.courses:
+    courses = len(made.courses_m) or 1
+    if len(plates) > 1 and len(plates) != courses:
         findings.add(
             ("shell", "thickness"),
-            f"{len(plates)} thicknesses, but the number of courses is {made.courses}.",
+            f"{len(plates)} thicknesses, but the number of courses is {courses}.",
             "Give one, or one for each course from the bottom up.",
         )
     roof = values["floating_roof"]
@@ -115,11 +116,33 @@ def note_doubts(tank: Tank, findings: Findings) -> None:
             findings.add(
                 ("thermometer", "elevations", n), f"{z:g} m is outside the vessel, {_span(vessel)}."
             )
+    _note_load(tank, findings)
     for level_m, volume_m3, expected in _mistyped(tank):
         findings.add(
             ("shape",),
             f"({level_m:g} m, {volume_m3:g} m3) looks mistyped.",
             f"Its neighbours suggest about {expected:.6g} m3.",
+        )
+
+
+def _note_load(tank: Tank, findings: Findings) -> None:
+    """Note plates that say nothing of this shape, and a roof too heavy for its critical zone."""
+    vessel, shell, roof = tank.vessel, tank.shell, tank.floating_roof
+    if shell is not None and shell.thickness_m and not shell.courses_m:
+        findings.add(
+            ("shell", "thickness"),
+            "only a vertical shell's plates are used, for its stretch under the liquid's head.",
+            "Leave it out.",
+        )
+    if roof is None:
+        return
+    zone = vessel.volume(roof.floats_at_m) - vessel.volume(roof.lands_at_m)
+    if roof.included_at_kg_m3 is None and roof.mass_kg / 1000.0 > zone:
+        findings.add(
+            ("floating_roof", "floats_at"),
+            f"between landing and floating the tank takes {zone:.1f} m3, but the roof displaces "
+            f"{roof.mass_kg / 1000.0:.1f} m3 even of water.",
+            "Check the roof's mass and the two levels.",
         )
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Any
 
@@ -71,7 +72,7 @@ def read_tank(document: Document, surroundings: Surroundings) -> Tank | None:
         kind=vessel.kind,
         file=document.path.stem,
         version=document.version,
-        **_fitted(values),
+        **_fitted(values, made),
     )
 
 
@@ -92,16 +93,16 @@ def _transmitters(values: Values) -> dict[str, Transmitter]:
     return {tag: fitted[tag] for tag in ("p1", "p2", "p3") if fitted.get(tag) is not None}
 
 
-def _fitted(values: Values) -> dict[str, Any]:
+def _fitted(values: Values, made: Shaped) -> dict[str, Any]:
     """Return the fields of a Tank that need nothing but their own table."""
-    flow = values["flow"] or {}
+    flow, shell = values["flow"] or {}, values["shell"]
     gauge, thermometer = values["level_gauge"] or {}, values["thermometer"] or {}
     dp: DifferentialTransmitter | None = (values["transmitters"] or {}).get("dp")
     return {
         "dp": dp,
         "vapour": values["vapour"],
         "relief_pa": values["vapour_space"],
-        "shell": values["shell"],
+        "shell": None if shell is None else replace(shell, courses_m=made.courses_m),
         "floating_roof": values["floating_roof"],
         "table": values["table"],
         "level_gauge": _accuracy(gauge),

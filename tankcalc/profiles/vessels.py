@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from typing import TYPE_CHECKING, NamedTuple
 
@@ -20,14 +21,15 @@ class Shaped(NamedTuple):
     ----------
     vessel : Vessel
         Its elevations count from the datum.
-    courses : int
-        Courses of plate; 1 where the file does not part them.
+    courses_m : tuple of (float, float, float)
+        Courses of a vertical shell, from the bottom up: from, to and internal radius, m above the
+        datum; empty for other shapes.
     reference_height_m : float or None
         Where an ullage reads zero, m above the datum.
     """
 
     vessel: Vessel
-    courses: int = 1
+    courses_m: tuple[tuple[float, float, float], ...] = ()
     reference_height_m: float | None = None
 
 
@@ -44,7 +46,23 @@ def shaped(
     except GeometryError as error:
         findings.add(place_of(error.key, values, at), error.why)
         return None
-    return Shaped(vessel, len(values.get("courses") or [values]), values.get("reference_height"))
+    return Shaped(vessel, _courses(vessel, values), values.get("reference_height"))
+
+
+def _courses(vessel: Vessel, values: Values) -> tuple[tuple[float, float, float], ...]:
+    """Return the courses of a vertical shell; a strapped one is a single course of mean radius."""
+    bottom = -(values["datum"] or 0.0)
+    if vessel.kind == "strapped":
+        height = vessel.z_max - vessel.z_min
+        radius = math.sqrt(vessel.capacity / (math.pi * height))
+        return ((vessel.z_min, vessel.z_max, radius),)
+    if vessel.kind != "vertical cylinder":
+        return ()
+    found = []
+    for course in values["courses"] or [values]:
+        found.append((bottom, bottom + course["height"], 0.5 * course["diameter"]))
+        bottom += course["height"]
+    return tuple(found)
 
 
 def place_of(key: str, shape: Values, at: At) -> At:
