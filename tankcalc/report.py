@@ -10,6 +10,7 @@ from tankcalc import units
 from tankcalc.result import Result
 
 if TYPE_CHECKING:
+    from tankcalc.sums import Line, Rounding
     from tankcalc.terms import Term
     from tankcalc.uncertainty import Budget
 
@@ -21,6 +22,12 @@ CAUTION = (
     "practice decide."
 )
 """The caution that every report and screen carries."""
+
+ROUNDED = {
+    "as printed": "rounded as printed in the standards (once, half up)",
+    "unrounded": "unrounded",
+}
+"""The two ways of rounding, in words."""
 
 STATUS_WORDS = {"good": "GOOD", "check": "CHECK", "refused": "REFUSED"}
 
@@ -37,6 +44,13 @@ _FIGURES = (
     ("vapour_mass_kg", "vapour mass", "mass"),
     ("weight_in_air_kg", "product in air", "mass"),
     ("density_kg_m3", "mean density", "density"),
+    ("standard_volume_m3", "standard volume", "volume"),
+    ("net_standard_volume_m3", "net standard", "volume"),
+    ("net_mass_kg", "net mass", "mass"),
+    ("net_weight_in_air_kg", "net in air", "mass"),
+    ("reference_density_kg_m3", "base density", "density"),
+    ("heel_volume_m3", "assumed: heel", "volume"),
+    ("heel_mass_kg", "assumed: heel", "mass"),
     ("room_m3", "room", "volume"),
     ("pumpable_m3", "pumpable", "volume"),
     ("p1_pa", "p1 should read", "pressure"),
@@ -136,6 +150,21 @@ def budget_table(budget: Budget, system: units.System) -> str:
 def _cells(name: str, own: str, level: str, volume: str, mass: str) -> str:
     """Return one row of a budget."""
     return f"{name:<18}{own:>13}{level:>17}{volume:>15}{mass:>15}"
+
+
+def sums_table(lines: tuple[Line, ...], rounding: Rounding) -> str:
+    """Return the working from the observed volume to the weight, a line for every factor."""
+    if not lines:
+        return "The readings are refused: there is no working."
+    shown = [f"Observed volume to weight, {ROUNDED[rounding]}"]
+    for line in lines:
+        value = f"{line.value:.{line.places}f} {line.unit}".rstrip()
+        head = f"  {line.symbol:<5}{value:>20}  "
+        made_of = textwrap.wrap(line.working, WIDTH - 1 - len(head)) or [""]
+        shown.append(head + made_of[0])
+        shown += [" " * len(head) + more for more in made_of[1:]]
+    known = ", ".join(f"{line.symbol} {line.name}" for line in lines)
+    return "\n".join([*shown, *wrapped(f"{known}.")])
 
 
 def terms_table(terms: tuple[Term, ...], system: units.System) -> str:

@@ -21,9 +21,12 @@ if TYPE_CHECKING:
     from tankcalc.fluids.fluid import Fluid
     from tankcalc.readings import Readings
     from tankcalc.result import Result
+    from tankcalc.sums import Line, Rounding
     from tankcalc.tank import Tank
     from tankcalc.units import System
 
+
+ROUNDINGS: dict[str, Rounding] = {"printed": "as printed", "none": "unrounded"}
 
 DOUBTS = ("disagreement", "density_differs")
 """Notices after which it is asked which single fault would explain them."""
@@ -45,6 +48,17 @@ def add_parser(subparsers: argparse._SubParsersAction[CommandParser]) -> None:
     parser.add_argument(
         "--terms", action="store_true", help="what each correction is worth in level and mass"
     )
+    parser.add_argument(
+        "--sums",
+        action="store_true",
+        help="the working from observed volume to net standard volume, mass and weight",
+    )
+    parser.add_argument(
+        "--rounding",
+        choices=("printed", "none"),
+        default="printed",
+        help="of the working: as the standards print their figures (default), or none",
+    )
     parser.add_argument("--json", action="store_true", help="print one JSON object, SI units")
     add_reading_options(parser)
 
@@ -60,7 +74,8 @@ def run(args: argparse.Namespace) -> int:
     doubted = result.status == "refused" or any(n.code in DOUBTS for n in result.warnings)
     found = explain(tank, fluid, readings, typed) if doubted else None
     if args.json:
-        _print_json(result, found)
+        working = _sums(args, tank, fluid, readings, system)
+        _print_json(result, found, working, ROUNDINGS[args.rounding])
     else:
         _print_text(result, found, system)
     if result.status == "refused":
@@ -104,6 +119,11 @@ def _print_working(
         budget = assess(tank, fluid, readings)
         if budget is not None:
             print(f"\n{budget_table(budget, system)}", file=stream)
+    if args.sums and not args.json:
+        from tankcalc.report import sums_table
+
+        working = _sums(args, tank, fluid, readings, system) or ()
+        print(f"\n{sums_table(working, ROUNDINGS[args.rounding])}")
     if args.terms:
         from tankcalc.report import terms_table
         from tankcalc.terms import terms
@@ -111,12 +131,37 @@ def _print_working(
         print(f"\n{terms_table(terms(tank, fluid, readings), system)}", file=stream)
 
 
-def _print_json(result: Result, found: Disagreement | None) -> None:
+def _sums(
+    args: argparse.Namespace, tank: Tank, fluid: Fluid, readings: Readings, system: System
+) -> tuple[Line, ...] | None:
+    """Return the working, None where it was not asked for."""
+    if not args.sums:
+        return None
+    from tankcalc.sums import sums
+
+    return sums(tank, fluid, readings, ROUNDINGS[args.rounding], system)
+
+
+def _print_json(
+    result: Result, found: Disagreement | None, working: tuple[Line, ...] | None, rounding: str
+) -> None:
     import json
 
     from tankcalc.result import as_json
 
     data = as_json(result)
+    if working is not None:
+        lines = [
+            {
+                "symbol": line.symbol,
+                "name": line.name,
+                "value": line.value,
+                "unit": line.unit,
+                "working": line.working,
+            }
+            for line in working
+        ]
+        data["sums"] = {"rounding": rounding, "lines": lines}
     if found is not None:
         data["explanations"] = [
             {
