@@ -203,16 +203,19 @@ def fill_density(
     return stated_kg_m3 / (1.0 + expansion_per_k * (conditions.leg_temperature_k - at_k))
 
 
-def _gas_share(molar_mass_kg_mol: float, rise_m: float, conditions: Conditions) -> float:
-    """Return the head of a gas column as a share of the pressure at the sensor.
+def _gas_ratio(molar_mass_kg_mol: float, rise_m: float, conditions: Conditions) -> Pressure:
+    """Return the pressure at the sensor of a gas column against that at a tap this much higher.
 
-    The density M P / (R T) is taken at the sensor's pressure, ideal gas.
+    Isothermal ideal gas: exp(M g rise / (R T)).
     """
+    import numpy as np
+
     temperature = conditions.leg_temperature_k
     if temperature is None:
         raise InputError("a gas-filled leg needs its temperature or the air's.")
     scale = GAS_CONSTANT_J_MOL_K * temperature
-    return molar_mass_kg_mol * conditions.gravity_m_s2 * rise_m / scale
+    ratio: Pressure = np.exp(molar_mass_kg_mol * conditions.gravity_m_s2 * rise_m / scale)
+    return ratio
 
 
 def sensor_from_tap(transmitter: Transmitter, tap_pa: Pressure, conditions: Conditions) -> Pressure:
@@ -240,10 +243,10 @@ def sensor_from_tap(transmitter: Transmitter, tap_pa: Pressure, conditions: Cond
         case DryLeg(gas_density_kg_m3=float(rho)):
             return tap_pa + rho * conditions.gravity_m_s2 * drop
         case DryLeg(molar_mass_kg_mol=float(molar_mass)):
-            return tap_pa / (1.0 - _gas_share(molar_mass, drop, conditions))
+            return tap_pa * _gas_ratio(molar_mass, drop, conditions)
         case Purge():
-            share = _gas_share(leg.molar_mass_kg_mol, drop, conditions)
-            return (tap_pa + leg.friction_pa) / (1.0 - share)
+            ratio = _gas_ratio(leg.molar_mass_kg_mol, drop, conditions)
+            return (tap_pa + leg.friction_pa) * ratio
     raise InputError("a dry leg needs its gas density or its molar mass.")
 
 

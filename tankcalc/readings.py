@@ -37,6 +37,8 @@ class Readings:
         Observed density of the liquid at tank temperature.
     sediment_water : float or None
         Sediment and water, as a fraction of volume.
+    ctl : float or None
+        The user's own factor from the volume in the tank to the standard volume.
     signals : tuple of (str, str)
         Tags of transmitters whose signal was not plainly good, with its band: "failed",
         "uncertain" or "saturated". A failed one has no pressure above.
@@ -57,6 +59,7 @@ class Readings:
     barometer_pa: float | None = None
     density_kg_m3: float | None = None
     sediment_water: float | None = None
+    ctl: float | None = None
     signals: tuple[tuple[str, str], ...] = ()
 
     def given(self) -> frozenset[str]:

@@ -85,9 +85,15 @@ class Result:
     density_kg_m3: Number | None = None
     standard_volume_m3: Number | None = None
     net_standard_volume_m3: Number | None = None
+    net_mass_kg: Number | None = None
+    net_weight_in_air_kg: Number | None = None
     reference_temperature_c: float | None = None
+    reference_density_kg_m3: Number | None = None
     ctl: Number | None = None
-    ctsh: Number | None = None
+    cpl: float | None = None
+    ctsh: float | None = None
+    heel_volume_m3: Number | None = None
+    heel_mass_kg: Number | None = None
     p1_pa: Number | None = None
     p2_pa: Number | None = None
     p3_pa: Number | None = None
@@ -130,9 +136,15 @@ JSON_KEYS = (
     "density_kg_m3",
     "standard_volume_m3",
     "net_standard_volume_m3",
+    "net_mass_kg",
+    "net_weight_in_air_kg",
     "reference_temperature_c",
+    "reference_density_kg_m3",
     "ctl",
+    "cpl",
     "ctsh",
+    "heel_volume_m3",
+    "heel_mass_kg",
     "p1_pa",
     "p2_pa",
     "p3_pa",

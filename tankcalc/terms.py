@@ -83,6 +83,7 @@ def _without(tank: Tank, fluid: Fluid, readings: Readings) -> Iterator[Variant]:
         others = {tag: t for tag, t in tank.transmitters.items() if tag != "p3"}
         unread = replace(readings, p3_pa=None)
         yield "pressure above the liquid", replace(tank, transmitters=others), fluid, unread
+    yield from _without_load(tank, fluid, readings)
     yield from _without_legs(tank, fluid, readings)
     yield from _without_temperature(tank, fluid, readings)
     if len(fluid.layers) > 1:
@@ -91,6 +92,19 @@ def _without(tank: Tank, fluid: Fluid, readings: Readings) -> Iterator[Variant]:
         yield "the layers below the uppermost", tank, product, dry
     elif readings.water_level_m is not None:
         yield "free water", tank, fluid, replace(readings, water_level_m=None)
+
+
+def _without_load(tank: Tank, fluid: Fluid, readings: Readings) -> Iterator[Variant]:
+    """Yield the question without the shell's growth, its stretch, and the roof."""
+    shell = tank.shell
+    if shell is not None and shell.expansion_per_k is not None:
+        rigid = replace(shell, expansion_per_k=None)
+        yield "temperature of the shell", replace(tank, shell=rigid), fluid, readings
+    if shell is not None and shell.thickness_m:
+        stiff = replace(shell, thickness_m=())
+        yield "stretch of the shell under the head", replace(tank, shell=stiff), fluid, readings
+    if tank.floating_roof is not None:
+        yield "floating roof", replace(tank, floating_roof=None), fluid, readings
 
 
 def _without_legs(tank: Tank, fluid: Fluid, readings: Readings) -> Iterator[Variant]:

@@ -61,6 +61,7 @@ FIELDS: tuple[Field, ...] = (
     Field("barometer", "barometer_pa", "pressure", 'outside pressure, e.g. "1013.2 hPa"'),
     Field("density", "density_kg_m3", "density", 'observed, at tank temperature: "845 kg/m3"'),
     Field("sediment_water", "sediment_water", "fraction", 'sediment and water, e.g. "0.1 %"'),
+    Field("ctl", "ctl", "dimensionless", 'your own factor to the standard volume, e.g. "0.98528"'),
     Field("volume", "volume_m3", "volume", 'all the liquid, e.g. "2450 m3"'),
     Field("mass", "mass_kg", "mass", 'all the liquid, e.g. "2100 t"'),
 )
@@ -227,6 +228,7 @@ def _check_possible(quantity: units.Quantity, field: Field) -> None:
     low, high, why = {
         "temperature": (0.0, 2000.0, "no liquid has this temperature."),
         "density": (250.0, 3_500.0, "no liquid that is stored has this density."),
+        "dimensionless": (0.5, 1.5, "no liquid that is stored shrinks or swells so much."),
         "fraction": (0.0, 1.0, "a share lies between 0 and 100 %."),
     }.get(field.dimension, (-math.inf, math.inf, ""))
     if not low <= quantity.si <= high:

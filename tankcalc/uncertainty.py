@@ -35,8 +35,9 @@ OUTPUTS = (
     "mass_kg",
     "product_mass_kg",
     "density_kg_m3",
+    "standard_volume_m3",
 )
-"""The figures that get an uncertainty, by their JSON keys."""
+"""The figures that get an uncertainty, by their JSON keys; the last where the liquid has one."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -110,18 +111,19 @@ def assess(tank: Tank, fluid: Fluid, readings: Readings) -> Budget | None:
     deltas = np.concatenate((np.zeros((1, len(inputs))), ups, -ups))
     moved = outputs_of_spread(model, found, inputs, deltas)
     count = len(inputs)
+    outputs = [key for key in OUTPUTS if np.isfinite(moved[key][0])]
     shares = [
         Share(
             one.name,
             one.uncertainty,
             one.dimension,
             one.stated,
-            {key: float(moved[key][1 + k] - moved[key][1 + count + k]) / 2.0 for key in OUTPUTS},
+            {key: float(moved[key][1 + k] - moved[key][1 + count + k]) / 2.0 for key in outputs},
         )
         for k, one in enumerate(inputs)
     ]
     standard = {
-        key: float(np.sqrt(sum(s.contributions[key] ** 2 for s in shares))) for key in OUTPUTS
+        key: float(np.sqrt(sum(s.contributions[key] ** 2 for s in shares))) for key in outputs
     }
     ordered = sorted(shares, key=lambda s: -abs(s.contributions["mass_kg"]))
     return Budget(tuple(ordered), standard)
@@ -149,7 +151,8 @@ def simulate(
     model, found = solve(tank, fluid, readings)
     inputs = inputs_of(model, found)
     deltas = np.random.default_rng(seed).standard_normal((draws, len(inputs)))
-    return outputs_of_spread(model, found, inputs, deltas)
+    drawn = outputs_of_spread(model, found, inputs, deltas)
+    return {key: values for key, values in drawn.items() if np.all(np.isfinite(values))}
 
 
 def propagate(

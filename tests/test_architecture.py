@@ -26,6 +26,7 @@ ORDER = (
     "readings",
     "result",
     "gauging",
+    "sums",
     "uncertainty",
     "terms",
     "consistency",

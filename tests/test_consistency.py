@@ -28,7 +28,7 @@ from tankcalc.instruments import (
     Transmitter,
 )
 from tankcalc.readings import Readings
-from tankcalc.tank import FloatingRoof, Tank
+from tankcalc.tank import Tank
 
 PSI = 6894.757293168
 TRUE = Readings(p1_pa=97_295.631, p2_pa=80_642.175, p3_pa=1500.0, level_m=12.0, density_kg_m3=850.0)
@@ -418,8 +418,6 @@ def test_what_leaves_a_little_too_much_is_listed_last_and_says_so() -> None:
 
 
 def test_what_cannot_be_modelled_is_said_in_words() -> None:
-    roofed = replace(fitted(), floating_roof=FloatingRoof(150_000.0, 1.5, 1.7))
-    assert "floating roof" in explain(roofed, LIQUID, TRUE).remark
     cold = replace(TRUE, temperatures=((None, 100.0),), density_kg_m3=None)
     assert (
         "outside what the expansion density covers" in explain(fitted(), single(OIL), cold).remark

@@ -19,7 +19,7 @@ from tankcalc.geometry import FlatEnd, HemisphericalEnd, sphere, vertical_cylind
 from tankcalc.instruments import DifferentialTransmitter, FilledLeg, Purge, Side, Transmitter
 from tankcalc.readings import Readings
 from tankcalc.span import TankSpan, TransmitterSpan, as_json, span_of
-from tankcalc.tank import FloatingRoof, Tank
+from tankcalc.tank import Tank
 
 G, AIR = 9.81, 1.2
 WEIGHTLESS = Vapour(density_kg_m3=0.0)
@@ -270,9 +270,6 @@ def test_what_the_gauging_refuses_is_not_foretold() -> None:
     closed = upright(transmitters=transmitters(p1=0.5, p3=15.0))
     with pytest.raises(NoAnswerError, match="below a perfect vacuum"):
         span_of(closed, [single(850.0)], Readings(p3_pa=-101_326.0))
-    roof = upright(floating_roof=FloatingRoof(50_000.0, 1.0, 1.2))
-    with pytest.raises(NoAnswerError, match="floating roof"):
-        span_of(roof, [single(850.0)], Readings())
     cold = Readings(temperatures=((None, 250.0),))
     with pytest.raises(NoAnswerError, match="liquid in V-1"):
         span_of(upright(), [single(Table((280.0, 300.0), (999.0, 997.0)))], cold)

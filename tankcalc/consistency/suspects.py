@@ -51,7 +51,6 @@ NONE_ALONE = (
 CONTRADICTED = "The readings contradict the tank, and no single slip that was tried explains it."
 NEARLY = "It leaves a little more disagreement than chance does."
 NOT_SETTLED = "The readings do not settle what is in the tank: nothing can be checked."
-ROOFED = "Under a floating roof the readings are not checked against each other."
 NOTHING_TOLD: Mapping[str, str] = MappingProxyType({})
 
 
@@ -100,8 +99,6 @@ def explain(
     """
     if any(np.ndim(getattr(readings, name)) for name in readings.given() - {"temperatures"}):
         raise ValueError("explain takes one set of readings, not arrays")
-    if tank.floating_roof is not None:
-        return Disagreement(0.0, 0, 0.0, False, remark=ROOFED)
     try:
         model, found = solve(tank, fluid, readings)
     except (RangeError, InputError) as error:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 import numpy as np
 
@@ -41,6 +42,6 @@ def volume_observation(model: Model) -> Iterator[Observation]:
         "volume",
         value,
         np.maximum(UNSTATED_DIP_M * area, smallest),
-        lambda state: np.asarray(vessel.volume(held(state))),
+        lambda state: model.volume(replace(state, surface_m=held(state))),
         slopes,
     )

@@ -2,19 +2,24 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+from typing import Any
+
 import numpy as np
 
 from tankcalc.constants import (
     CONVENTIONAL_AIR_DENSITY_KG_M3,
     CONVENTIONAL_WEIGHT_DENSITY_KG_M3,
+    ICE_POINT_K,
 )
 from tankcalc.gauging.case import Case, FloatArray
 from tankcalc.gauging.model import Model, State
-from tankcalc.result import LayerShare
+from tankcalc.gauging.standard import Standard, standard
+from tankcalc.result import LayerShare, Notice
 
 
-def amounts(model: Model, state: State) -> dict[str, FloatArray | None]:
-    """Return the figures of a result for surfaces inside the vessel, by their JSON names.
+def amounts(model: Model, state: State, by: str) -> tuple[dict[str, Any], tuple[Notice, ...]]:
+    """Return the figures of a result for surfaces inside the vessel, and doubts about them.
 
     Parameters
     ----------
@@ -22,16 +27,25 @@ def amounts(model: Model, state: State) -> dict[str, FloatArray | None]:
         Tank, column and readings.
     state : State
         Surfaces inside the vessel, densities and vapour pressures; arrays of any shape.
+    by : str
+        The reading that the search for the surface began with.
+
+    Returns
+    -------
+    dict
+        Arrays of the readings' shape by JSON name, floats where the figure is one of all rows,
+        None where it cannot be known.
+    tuple of Notice
     """
     case, level_m = model.case, state.surface_m
     vessel, tank = case.tank.vessel, case.tank
     volume, product_mass, water_mass = model.contents(state)
-    water_volume = _free_water(case, level_m)
+    water_volume = free_water_m3(case, level_m)
     product_volume, mass = volume - water_volume, product_mass + water_mass
     has_water = case.liquid.water_top_m is not None
     vapour = tank.vapour or case.fluid.vapour
-    empty = vessel.capacity - volume
-    return {
+    at_base = standard(model, state, product_volume, product_mass)
+    known = {
         "level_m": level_m,
         "ullage_m": tank.ullage_reference_m - level_m,
         "fill": volume / vessel.capacity,
@@ -41,12 +55,55 @@ def amounts(model: Model, state: State) -> dict[str, FloatArray | None]:
         "product_volume_m3": product_volume,
         "mass_kg": mass,
         "product_mass_kg": product_mass,
-        "vapour_mass_kg": model.vapour_density(state.vapour_pa) * empty if vapour else None,
-        "weight_in_air_kg": weight_in_air(product_mass, product_volume),
+        "vapour_mass_kg": model.vapour_mass(state) if vapour else None,
+        "weight_in_air_kg": _weight(product_mass, product_volume, at_base),
         "density_kg_m3": _mean_density(model, state, mass, volume),
-        "room_m3": _volume_to(case, "maximum_working", volume),
-        "pumpable_m3": _volume_above(case, "minimum_working", volume),
+        "ctsh": case.shell.factor,
+        "room_m3": _room(model, state, volume),
+        "pumpable_m3": _pumpable(model, state, volume),
     }
+    return known | _at_base(case, at_base) | _heel(model, state, by), at_base.notices
+
+
+def _at_base(case: Case, at_base: Standard) -> dict[str, Any]:
+    """Return the figures of the product at its base temperature, net of sediment and water."""
+    net: FloatArray | None = None
+    if at_base.volume_m3 is not None and case.readings.sediment_water is not None:
+        net = at_base.volume_m3 * (1.0 - case.readings.sediment_water)
+    dense = at_base.density_kg_m3
+    net_mass = None if net is None or dense is None else net * dense
+    return {
+        "standard_volume_m3": at_base.volume_m3,
+        "net_standard_volume_m3": net,
+        "net_mass_kg": net_mass,
+        "net_weight_in_air_kg": None
+        if net is None or net_mass is None
+        else weight_in_air(net_mass, net),
+        "reference_temperature_c": None
+        if at_base.base_k is None
+        else round(at_base.base_k - ICE_POINT_K, 9),
+        "reference_density_kg_m3": dense,
+        "ctl": at_base.ctl,
+        "cpl": None if at_base.ctl is None else case.liquid.pressure_factor,
+    }
+
+
+def _weight(mass_kg: FloatArray, volume_m3: FloatArray, at_base: Standard) -> FloatArray:
+    """Return the product's weight in air; the trade weighs it at its base temperature."""
+    return weight_in_air(mass_kg, volume_m3 if at_base.volume_m3 is None else at_base.volume_m3)
+
+
+def _heel(model: Model, state: State, by: str) -> dict[str, FloatArray | None]:
+    """Return what lies below the tap that the answer rests on: assumed, not measured."""
+    case = model.case
+    taps = {tag: t.elevation_m for tag, t in case.tank.transmitters.items()}
+    if case.tank.dp is not None:
+        taps["dp"] = case.tank.dp.high.elevation_m
+    if by not in taps or taps[by] <= case.tank.vessel.z_min:
+        return {"heel_volume_m3": None, "heel_mass_kg": None}
+    tap = np.minimum(min(taps[by], case.tank.vessel.z_max), state.surface_m)
+    volume, product, water = model.without_roof().contents(replace(state, surface_m=tap))
+    return {"heel_volume_m3": volume, "heel_mass_kg": product + water}
 
 
 def weight_in_air(mass_kg: FloatArray, volume_m3: FloatArray) -> FloatArray:
@@ -69,7 +126,7 @@ def weight_in_air(mass_kg: FloatArray, volume_m3: FloatArray) -> FloatArray:
     return np.asarray((mass_kg - buoyancy) / weights)
 
 
-def _free_water(case: Case, level_m: FloatArray) -> FloatArray:
+def free_water_m3(case: Case, level_m: FloatArray) -> FloatArray:
     """Return the volume (m3) of the free water below surfaces (m)."""
     top = case.liquid.water_top_m
     if top is None:
@@ -96,16 +153,24 @@ def _mean_density(
     return np.where(volume_m3 > 0.0, mean, model.density(bottom, state))
 
 
-def _volume_to(case: Case, limit: str, volume_m3: FloatArray) -> FloatArray | None:
-    """Return the volume (m3) still to come up to a limit; negative above it."""
-    at = case.tank.limits_m.get(limit)
-    return None if at is None else np.asarray(case.tank.vessel.volume(at)) - volume_m3
+def _at_limit(model: Model, state: State, limit: str) -> FloatArray | None:
+    """Return the volume (m3) that the tank holds at a limit."""
+    at = model.case.tank.limits_m.get(limit)
+    if at is None:
+        return None
+    return model.volume(replace(state, surface_m=np.full(state.surface_m.shape, at)))
 
 
-def _volume_above(case: Case, limit: str, volume_m3: FloatArray) -> FloatArray | None:
-    """Return the volume (m3) above a limit; negative below it."""
-    at = case.tank.limits_m.get(limit)
-    return None if at is None else volume_m3 - np.asarray(case.tank.vessel.volume(at))
+def _room(model: Model, state: State, volume_m3: FloatArray) -> FloatArray | None:
+    """Return the volume (m3) still to come up to the maximum working level; negative above it."""
+    held = _at_limit(model, state, "maximum_working")
+    return None if held is None else held - volume_m3
+
+
+def _pumpable(model: Model, state: State, volume_m3: FloatArray) -> FloatArray | None:
+    """Return the volume (m3) above the minimum working level; negative below it."""
+    held = _at_limit(model, state, "minimum_working")
+    return None if held is None else volume_m3 - held
 
 
 def layer_shares(model: Model, state: State) -> tuple[LayerShare, ...]:

@@ -17,6 +17,10 @@ from tankcalc.result import Notice
 HEADROOM = 0.01
 """How far below the top an estimate begins whose first surface was above it, as a share."""
 
+THINNING = 3
+"""Rounds in which a vapour that thins out upwards is taken into account; each leaves a
+ten-thousandth of the error."""
+
 HEAVIEST_VAPOUR = 0.5
 """A vapour heavier than this share of the heaviest liquid is near critical, or mistyped."""
 
@@ -80,6 +84,9 @@ def level_behind(model: Model, tag: str, state: State) -> FloatArray:
         tap = tap_from_reading(transmitter, reading, case.conditions)
         difference = np.asarray(tap - state.vapour_pa)
     level = surface_from_pressures(case.column, model.gravity, low_m, difference, rv, high_m)
+    for _ in range(THINNING if model.vapour_thins else 0):
+        rv = model.mean_vapour_density(level, high_m, state)
+        level = surface_from_pressures(case.column, model.gravity, low_m, difference, rv, high_m)
     return np.broadcast_to(level, case.shape)
 
 

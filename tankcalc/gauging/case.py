@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 
 import numpy as np
@@ -12,8 +12,9 @@ import numpy.typing as npt
 from tankcalc.fluids.column import Column
 from tankcalc.fluids.fluid import Fluid
 from tankcalc.gauging.liquid import Liquid, liquid_in
+from tankcalc.gauging.shell import ShellState, tank_as_it_stands
 from tankcalc.hydrostatics import Filling
-from tankcalc.instruments import Conditions, FilledLeg
+from tankcalc.instruments import Conditions, FilledLeg, tap_from_reading
 from tankcalc.readings import Readings
 from tankcalc.tank import Tank
 
@@ -35,7 +36,10 @@ ARRAY_FIELDS = (
 
 @dataclass(frozen=True)
 class Case:
-    """Tank, fluid and readings with the column and the conditions."""
+    """Tank, fluid and readings with the column and the conditions.
+
+    The tank is as it stands: its vessel and taps at the shell's temperature, under the head.
+    """
 
     tank: Tank
     fluid: Fluid
@@ -44,6 +48,7 @@ class Case:
     liquid: Liquid
     given: Mapping[str, FloatArray]
     shape: tuple[int, ...]
+    shell: ShellState = field(default_factory=ShellState)
 
     @classmethod
     def of(cls, tank: Tank, fluid: Fluid, readings: Readings) -> Case:
@@ -71,8 +76,9 @@ class Case:
             if value is not None
         }
         shape = np.broadcast_shapes(*(value.shape for value in given.values()))
-        liquid = liquid_in(tank, fluid, readings)
-        return cls(tank, fluid, readings, conditions, liquid, given, shape)
+        liquid = liquid_in(tank, fluid, readings).under(_gauge_pa(tank, given, conditions))
+        tank, shell = tank_as_it_stands(tank, liquid, air_k, around.gravity_m_s2)
+        return cls(tank, fluid, readings, conditions, liquid, given, shape, shell)
 
     @property
     def column(self) -> Column:
@@ -98,6 +104,19 @@ class Case:
         """Return the tags of the fitted transmitters."""
         tags = tuple(tag for tag in ("p1", "p2", "p3") if tag in self.tank.transmitters)
         return (*tags, "dp") if self.tank.dp is not None else tags
+
+
+def _gauge_pa(tank: Tank, given: Mapping[str, FloatArray], conditions: Conditions) -> float:
+    """Return the pressure above the liquid as p3 reads it, Pa gauge; zero where it does not.
+
+    Of many readings the mean: what it is for, the liquid's density under pressure, changes by a
+    part in ten thousand per bar.
+    """
+    p3 = tank.transmitters.get("p3")
+    if p3 is None or "p3_pa" not in given or not given["p3_pa"].size:
+        return 0.0
+    tap = tap_from_reading(p3, given["p3_pa"], conditions)
+    return float(np.mean(tap)) - conditions.outside_pa(p3.elevation_m)
 
 
 def _stated_fill_k(tank: Tank) -> float | None:

@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from tankcalc.constants import ICE_POINT_K, STANDARD_GRAVITY_M_S2
+from tankcalc.constants import STANDARD_GRAVITY_M_S2
 from tankcalc.gauging.case import BoolArray, Case, FloatArray
 from tankcalc.gauging.comparisons import density_measured, misfit, unneeded, where_of
 from tankcalc.gauging.model import Model, State
@@ -15,8 +15,9 @@ from tankcalc.gauging.words import length, pressure
 from tankcalc.result import Notice
 from tankcalc.tank import LIMIT_ORDER
 
-SHELL_WORTH_SAYING = 2e-4
-"""A shell correction smaller than this share of the volume is not mentioned."""
+FAR_FROM_TABLE = 0.3
+"""Share by which the liquid may differ from the density a capacity table allows for (common
+practice: national rules for stationary tanks state 30 %, seen in one of them)."""
 
 
 def doubts(
@@ -32,7 +33,7 @@ def doubts(
         Rows that have no answer; nothing is said of them.
     """
     case, level_m = model.case, state.surface_m
-    notices = [*_surroundings(case), *_legs(case), *_vapour(found), *_uncomputed(case)]
+    notices = [*_surroundings(case), *_legs(case), *_vapour(found), *_shell(model)]
     water, water_above = _water(case, level_m, ~refused)
     kept = ~refused & ~water_above
     notices += [*water, *_density(case, level_m, kept), *_limits(case, level_m, kept)]
@@ -102,26 +103,33 @@ def _covered_p3(case: Case, level_m: FloatArray, kept: BoolArray) -> Iterator[No
         )
 
 
-def _uncomputed(case: Case) -> Iterator[Notice]:
-    if case.readings.sediment_water is not None:
+def _shell(model: Model) -> Iterator[Notice]:
+    """Say so where the shell's temperature is not known, or the liquid is none of its table's."""
+    case = model.case
+    if case.shell.expands and case.shell.temperature_k is None:
         yield Notice(
-            "sediment_water_unused",
-            "Sediment and water are not taken off by this version: no figure is net of them.",
-            "sediment_water",
+            "shell_temperature_unknown",
+            "The liquid's temperature was not given: the shell is taken at that of its "
+            "calibration.",
+            "temperature",
         )
-    shell, liquid_k = case.tank.shell, case.liquid.temperature_k
-    if shell is None or liquid_k is None:
+    table = case.shell.table_density_kg_m3
+    if table is None:
         return
-    if shell.expansion_per_k is None or shell.calibrated_at_k is None:
-        return
-    share = 2.0 * shell.expansion_per_k * (liquid_k - shell.calibrated_at_k)
-    if abs(share) > SHELL_WORTH_SAYING:
+    mean = float(np.mean(model.density(case.tank.vessel.z_min, _plain_state())))
+    if abs(mean / table - 1.0) > FAR_FROM_TABLE:
         yield Notice(
-            "shell_not_corrected",
-            f"The shell was calibrated at {shell.calibrated_at_k - ICE_POINT_K:.1f} degC; at the "
-            f"liquid's {liquid_k - ICE_POINT_K:.1f} degC it holds about {100.0 * share:+.3f} %. "
-            "This version does not correct for it.",
+            "table_density",
+            f"The liquid's {mean:.0f} kg/m3 is more than 30 % from the {table:.0f} kg/m3 that the "
+            "capacity table was made for.",
+            "fluid",
         )
+
+
+def _plain_state() -> State:
+    """Return a state for the profile's own density."""
+    one = np.ones(())
+    return State(one, one, one)
 
 
 def _water(case: Case, level_m: FloatArray, kept: BoolArray) -> tuple[list[Notice], BoolArray]:

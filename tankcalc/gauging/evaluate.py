@@ -11,23 +11,18 @@ from tankcalc.errors import InputError, RangeError
 from tankcalc.fluids.fluid import Fluid
 from tankcalc.gauging.amounts import amounts, layer_shares
 from tankcalc.gauging.case import BoolArray, FloatArray
+from tankcalc.gauging.comparisons import where_of
 from tankcalc.gauging.doubts import doubts
 from tankcalc.gauging.model import Model
 from tankcalc.gauging.solve import solve
 from tankcalc.gauging.state import Found
+from tankcalc.gauging.under_roof import critical_zone, in_critical_zone
 from tankcalc.readings import Readings
 from tankcalc.result import Notice, Result, Status
 from tankcalc.tank import Tank
 
-REMARKS = frozenset({"vapour_pressure_assumed"})
+REMARKS = frozenset({"vapour_pressure_assumed", "shell_temperature_unknown"})
 """Notices that are no doubt of the answer: it does not rest on what they say."""
-
-_FLOATING_ROOF = Notice(
-    "floating_roof",
-    "The tank has a floating roof: what it displaces and weighs is not computed by this version, "
-    "and without it neither volume nor mass would be right.",
-    refuses=True,
-)
 
 
 def evaluate(tank: Tank, fluid: Fluid, readings: Readings) -> Result:
@@ -55,8 +50,6 @@ def evaluate(tank: Tank, fluid: Fluid, readings: Readings) -> Result:
     integral of density from the tap to the surface. The pure function of its arguments: no
     clock, no file, no environment.
     """
-    if tank.floating_roof is not None:
-        return Result(tank.name, fluid.name, "nothing", "refused", (_FLOATING_ROOF,))
     try:
         model, found = solve(tank, fluid, readings)
     except (RangeError, InputError) as error:
@@ -70,9 +63,32 @@ def evaluate(tank: Tank, fluid: Fluid, readings: Readings) -> Result:
         more, water_above = doubts(model, found, state, refused)
         notices.extend(more)
         refused = refused | water_above
+        landing = _landing(model, held) & ~refused
+        if np.any(landing):
+            notices.append(critical_zone(model, where_of(landing)))
+            refused = refused | landing
     if np.all(refused):
-        return Result(tank.name, fluid.name, found.basis, "refused", tuple(notices))
+        return _refused(model, found, tuple(notices))
     return _result(model, found, refused, tuple(notices))
+
+
+def _landing(model: Model, surface_m: FloatArray) -> BoolArray:
+    """Return whether a floating roof is neither afloat nor on its legs."""
+    roof = model.case.tank.floating_roof
+    if roof is None:
+        return np.zeros(surface_m.shape, dtype=bool)
+    return in_critical_zone(roof, surface_m)
+
+
+def _refused(model: Model, found: Found, notices: tuple[Notice, ...]) -> Result:
+    """Return a refusal; the level is still told where only the roof makes the amounts unsure."""
+    case, surface = model.case, found.state.surface_m
+    refused = Result(case.tank.name, case.fluid.name, found.basis, "refused", notices)
+    sure = {n.code for n in notices if n.refuses} == {"roof_critical_zone"}
+    if surface.ndim or not sure or np.isnan(surface):
+        return refused
+    ullage = case.tank.ullage_reference_m - float(surface)
+    return replace(refused, level_m=float(surface), ullage_m=ullage)
 
 
 def _result(model: Model, found: Found, refused: BoolArray, notices: tuple[Notice, ...]) -> Result:
@@ -80,8 +96,8 @@ def _result(model: Model, found: Found, refused: BoolArray, notices: tuple[Notic
     case = model.case
     level = np.where(refused, case.tank.vessel.z_min, found.state.surface_m)
     state = replace(found.state, surface_m=level)
-    figures: dict[str, FloatArray | None] = amounts(model, state)
-    more: list[Notice] = []
+    figures, at_base = amounts(model, state, found.by)
+    more: list[Notice] = list(at_base)
     for tag in case.fitted():
         try:
             figures[f"{tag}_pa"] = model.expected(tag, state)
@@ -90,7 +106,8 @@ def _result(model: Model, found: Found, refused: BoolArray, notices: tuple[Notic
     notices = (*notices, *more)
     single = level.ndim == 0
     shown: dict[str, Any] = {
-        name: None if value is None else _plain(value, refused) for name, value in figures.items()
+        name: _plain(value, refused) if isinstance(value, np.ndarray) else value
+        for name, value in figures.items()
     }
     status: Status = "check" if any(n.code not in REMARKS for n in notices) else "good"
     return Result(
@@ -105,8 +122,11 @@ def _result(model: Model, found: Found, refused: BoolArray, notices: tuple[Notic
     )
 
 
-def _plain(value: FloatArray, refused: BoolArray) -> float | FloatArray:
-    """Return a float for one reading, or an array whose refused rows hold NaN."""
+def _plain(value: FloatArray, refused: BoolArray) -> float | FloatArray | None:
+    """Return a float for one reading, or an array whose refused rows hold NaN.
+
+    What an empty tank has none of (a density, a factor) is None.
+    """
     if refused.ndim == 0:
-        return float(value)
+        return None if np.isnan(value) else float(value)
     return np.where(refused, np.nan, np.broadcast_to(value, refused.shape))

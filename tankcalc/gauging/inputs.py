@@ -44,6 +44,10 @@ LEG_TEMPERATURE_K = {"read": 3.0, "air": 5.0, "assumed": 15.0}
 """Standard uncertainty of a leg's mean temperature, K: read; taken from the air; nothing known
 of it (common practice, no source)."""
 
+ROOF_SHARE = 0.02
+"""Relative standard uncertainty of a roof's mass with the water, snow and fittings on it (common
+practice, no source)."""
+
 WATER_LEVEL_M = {True: 0.003, False: 0.05}
 """Standard uncertainty of the free water's top: read; taken from the profile, m."""
 
@@ -58,7 +62,8 @@ class Input:
         In words.
     kind : str
         What `spread` moves: "reading", "gravity", "air", "barometer", "vapour", "elevation",
-        "factor", "geometry", "leg" or "water".
+        "factor", "geometry", "leg", "roof", "water", or "base", which moves the standard volume
+        alone.
     uncertainty : float
         Standard uncertainty, SI; relative for "factor", "vapour" and "geometry".
     dimension : str
@@ -99,9 +104,14 @@ def _inputs(model: Model, found: Found) -> Iterator[Input]:
     free = group.fit.unknowns if group is not None and group.fit is not None else ()
     if FACTOR not in free:
         yield from _density(model, found)
+    else:
+        yield from _temperature(model, "base")
     if case.liquid.water_top_m is not None:
         read = case.readings.water_level_m is not None
         yield Input("water level", "water", WATER_LEVEL_M[read], "length", stated=False)
+    roof = case.tank.floating_roof
+    if roof is not None and found.state.surface_m > roof.lands_at_m:
+        yield Input("roof", "roof", ROOF_SHARE * roof.mass_kg, "mass", stated=False)
     certificate = case.tank.table
     share = certificate.uncertainty if certificate is not None else None
     yield Input(
@@ -178,17 +188,23 @@ def _density(model: Model, found: Found) -> Iterator[Input]:
         UNSTATED_DENSITY_KG_M3 / rho,
         "fraction",
     )
-    layer = case.liquid.layers[-1]
-    temperature = case.liquid.temperature_k
-    if temperature is None or not layer.model.needs_temperature:
+    if case.liquid.layers[-1].model.needs_temperature:
+        yield from _temperature(model, "factor")
+
+
+def _temperature(model: Model, kind: str) -> Iterator[Input]:
+    """Yield the liquid's temperature as the share of density that its uncertainty is worth."""
+    case = model.case
+    product, temperature = case.liquid.product, case.liquid.temperature_k
+    if temperature is None or not product.needs_temperature:
         return
-    low, high = layer.model.limits_k
+    low, high = product.limits_k
     around = np.clip([temperature - 0.5, temperature + 0.5], low, high)
-    cold, warm = layer.model.density(np.asarray(around))
+    cold, warm = product.density(np.asarray(around))
     per_kelvin = abs(warm / cold - 1.0) / max(float(around[1] - around[0]), 1e-9)
     read = bool(case.readings.temperatures)
     accuracy = case.tank.thermometer
     kelvin = TEMPERATURE_K if read else ASSUMED_TEMPERATURE_K
     if read and accuracy is not None and accuracy.fixed > 0.0:
         kelvin = accuracy.fixed
-    yield Input("temperature", "factor", per_kelvin * kelvin, "fraction", accuracy is not None)
+    yield Input("temperature", kind, per_kelvin * kelvin, "fraction", accuracy is not None)

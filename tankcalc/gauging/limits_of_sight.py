@@ -139,11 +139,13 @@ def unread_blanket(model: Model, level_at: tuple[float, float] | None) -> Notice
 
 def bounds_between(model: Model, low_m: float, high_m: float) -> Bounds:
     """Return what the tank holds at least and at most, for surfaces between two elevations (m)."""
-    vessel, filling = model.case.tank.vessel, model.case.filling
+    two = np.ones(2)
+    volume, product, water = model.contents(State(np.array([low_m, high_m]), two, two))
+    mass = product + water
     return {
         "level_m": (low_m, high_m),
-        "volume_m3": (float(vessel.volume(low_m)), float(vessel.volume(high_m))),
-        "mass_kg": (float(filling.mass(low_m)), float(filling.mass(high_m))),
+        "volume_m3": (float(volume[0]), float(volume[1])),
+        "mass_kg": (float(mass[0]), float(mass[1])),
     }
 
 

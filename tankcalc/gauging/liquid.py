@@ -4,11 +4,14 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 
+import numpy as np
+
 from tankcalc.constants import ICE_POINT_K
+from tankcalc.errors import RangeError
 from tankcalc.fluids.column import Column, column_of_layers
 from tankcalc.fluids.constant import Constant
 from tankcalc.fluids.fluid import Fluid, Layer
-from tankcalc.fluids.models import Temperatures
+from tankcalc.fluids.models import DensityModel, Temperatures
 from tankcalc.fluids.water import Water
 from tankcalc.readings import Readings
 from tankcalc.result import Notice
@@ -29,15 +32,43 @@ class Liquid:
         Top of the free water above the datum, m; None where there is none.
     temperature_k : float or None
         Temperature of the liquid nearest the surface, K, where one is known.
+    mean_temperature_k : float or None
+        Mean over the height from the bottom of the vessel to the highest element, K.
+    product : DensityModel
+        Of the uppermost liquid, as its profile has it; an observed density does not replace it.
     notices : tuple of Notice
         What was assumed.
+    pressure_factor : float
+        Density of the uppermost liquid against that at outside pressure (CPL); the column has it
+        already.
     """
 
     layers: tuple[Layer, ...]
     column: Column
     water_top_m: float | None
     temperature_k: float | None
+    mean_temperature_k: float | None
+    product: DensityModel
     notices: tuple[Notice, ...]
+    pressure_factor: float = 1.0
+
+    def under(self, gauge_pa: float) -> Liquid:
+        """Return the liquid under a pressure (Pa gauge), where its model says what that does.
+
+        An observed density is that in the tank already.
+        """
+        kelvin, model = self.mean_temperature_k, self.layers[-1].model
+        if kelvin is None or gauge_pa <= 0.0 or not model.needs_temperature:
+            return self
+        try:
+            factor = float(model.pressure_factor(np.asarray(kelvin), np.asarray(gauge_pa)))
+        except RangeError as error:
+            message = f"The liquid's compression under p3 is left out: {error}"
+            return replace(self, notices=(*self.notices, Notice("not_compressed", message)))
+        if factor == 1.0:
+            return self
+        factors = [1.0] * (len(self.layers) - 1) + [factor]
+        return replace(self, column=self.column.scaled(factors), pressure_factor=factor)
 
 
 def liquid_in(tank: Tank, fluid: Fluid, readings: Readings) -> Liquid:
@@ -66,8 +97,21 @@ def liquid_in(tank: Tank, fluid: Fluid, readings: Readings) -> Liquid:
         column,
         free_water_top(layers),
         temperatures.values_k[-1] if temperatures else None,
+        _mean_k(temperatures, tank.vessel.z_min) if temperatures else None,
+        fluid.layers[-1].model,
         notices,
     )
+
+
+def _mean_k(temperatures: Temperatures, bottom_m: float) -> float:
+    """Return the mean temperature (K) over the height from the bottom to the highest element."""
+    elevations, values = temperatures.elevations_m, temperatures.values_k
+    if len(elevations) < 2:
+        return values[-1]
+    z, k = np.asarray(elevations), np.asarray(values)
+    below = max(elevations[0] - bottom_m, 0.0) * values[0]
+    between = float(np.sum(0.5 * (k[:-1] + k[1:]) * np.diff(z)))
+    return (below + between) / (elevations[-1] - min(bottom_m, elevations[0]))
 
 
 def free_water_top(layers: tuple[Layer, ...]) -> float | None:

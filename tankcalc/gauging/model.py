@@ -6,7 +6,7 @@ and the pressure above it. One equation gives all the rest.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
@@ -15,6 +15,7 @@ import numpy.typing as npt
 from tankcalc.constants import GAS_CONSTANT_J_MOL_K, ICE_POINT_K
 from tankcalc.fluids.column import Column
 from tankcalc.gauging.case import Case, FloatArray
+from tankcalc.gauging.roof import less_roof
 from tankcalc.hydrostatics import Filling
 from tankcalc.instruments import reading_from_tap, side_head_pa, tap_from_reading
 
@@ -123,14 +124,27 @@ class Model:
         return np.asarray(rho if self.water is None else rho + self.water.density(z_m))
 
     def contents(self, state: State) -> tuple[FloatArray, FloatArray, FloatArray]:
-        """Return the volume (m3) and the masses of the product and of the free water (kg)."""
+        """Return the volume (m3) and the masses of the product and of the free water (kg).
+
+        All of it is liquid: a floating roof is taken off.
+        """
         surface = state.surface_m
         volume, moment = self.case.tank.vessel.volume_and_moment(surface)
         product = state.factor * self.product_filling.mass_from(surface, volume, moment)
         water = np.zeros(surface.shape)
         if self.water_filling is not None:
             water = self.water_filling.mass_from(surface, volume, moment)
-        return np.asarray(volume), np.asarray(product), water
+        liquid, product = less_roof(self, state, np.asarray(volume), np.asarray(product))
+        return liquid, product, water
+
+    def without_roof(self) -> Model:
+        """Return the model of the same tank without its floating roof."""
+        bare = replace(self.case.tank, floating_roof=None)
+        return replace(self, case=replace(self.case, tank=bare))
+
+    def volume(self, state: State) -> FloatArray:
+        """Return the volume (m3) of all liquid, a floating roof taken off."""
+        return self.contents(state)[0]
 
     def vapour_density(self, vapour_pa: FloatArray) -> FloatArray:
         """Return the density of what fills the space above the liquid, kg/m3."""
@@ -146,6 +160,49 @@ class Model:
         molar_mass = (vapour.molar_mass_kg_mol or 0.0) * self.vapour_scale
         return np.asarray(vapour_pa * molar_mass / scale)
 
+    def vapour_mass(self, state: State) -> FloatArray:
+        """Return the mass of what fills the space above the liquid, kg: stock, where it is vapour.
+
+        Notes
+        -----
+        A vapour of stated molar mass thins out upwards, P = P0 exp(-M g (z - z0) / (Z R T)); its
+        density at the middle of the space's height stands for all of it, to 1e-6.
+        """
+        vessel = self.case.tank.vessel
+        empty = vessel.capacity - np.asarray(vessel.volume(state.surface_m))
+        middle = 0.5 * (state.surface_m + vessel.z_max)
+        at = self.vapour_pressure(middle, state)
+        return np.asarray(self.vapour_density(at) * empty)
+
+    def vapour_pressure(self, z_m: npt.ArrayLike, state: State) -> FloatArray:
+        """Return the pressure at an elevation above the liquid, Pa absolute.
+
+        Notes
+        -----
+        Isothermal gas of stated molar mass: P = P0 exp(M g (z0 - z) / (Z R T)). A vapour of stated
+        density, or outside air, is the same density all the way.
+        """
+        rise = self.vapour_at_m - np.asarray(z_m)
+        if not self.vapour_thins:
+            return np.asarray(
+                state.vapour_pa + self.gravity * self.vapour_density(state.vapour_pa) * rise
+            )
+        per_pa = self.vapour_density(np.ones(state.vapour_pa.shape))
+        return np.asarray(state.vapour_pa * np.exp(self.gravity * per_pa * rise))
+
+    def mean_vapour_density(self, low_m: npt.ArrayLike, high_m: float, state: State) -> FloatArray:
+        """Return the mean density of the vapour between two elevations, kg/m3."""
+        rise = high_m - np.asarray(low_m)
+        flat = np.where(np.abs(rise) > 1e-6, rise, 1.0)
+        drop = self.vapour_pressure(high_m - flat, state) - self.vapour_pressure(high_m, state)
+        return np.asarray(drop / (self.gravity * flat))
+
+    @property
+    def vapour_thins(self) -> bool:
+        """Whether the vapour's density follows from its pressure, and so falls with height."""
+        vapour = self.case.tank.vapour or self.case.fluid.vapour
+        return vapour is not None and vapour.density_kg_m3 is None
+
     @cached_property
     def _vapour_temperature_k(self) -> float:
         case = self.case
@@ -158,9 +215,8 @@ class Model:
 
     def pressure(self, z_m: float, state: State) -> FloatArray:
         """Return the pressure in the tank at an elevation, Pa absolute."""
-        rv = self.vapour_density(state.vapour_pa)
-        in_vapour = state.vapour_pa + self.gravity * rv * (self.vapour_at_m - z_m)
-        at_surface = state.vapour_pa + self.gravity * rv * (self.vapour_at_m - state.surface_m)
+        in_vapour = self.vapour_pressure(z_m, state)
+        at_surface = self.vapour_pressure(state.surface_m, state)
         low = np.minimum(z_m, state.surface_m)
         in_liquid = at_surface + self._head(self.areal_mass(low, state))
         return np.where(state.surface_m > z_m, in_liquid, in_vapour)
@@ -178,10 +234,9 @@ class Model:
     def pressure_slopes(self, z_m: float, state: State) -> Slopes:
         """Return how the pressure at an elevation changes with the state."""
         g, covered = self.gravity, state.surface_m > z_m
-        rv = self.vapour_density(state.vapour_pa)
-        vapour = self.case.tank.vapour or self.case.fluid.vapour
+        rv = self.vapour_density(self.vapour_pressure(state.surface_m, state))
         per_pa: FloatArray | float = 0.0
-        if vapour and vapour.density_kg_m3 is None:
+        if self.vapour_thins:
             per_pa = self.vapour_density(np.ones(state.vapour_pa.shape))
         low = np.minimum(z_m, state.surface_m)
         modulus = self.case.column.bulk_modulus_pa
@@ -194,7 +249,7 @@ class Model:
         return (
             np.where(covered, by_surface, 0.0),
             np.where(covered, by_factor, 0.0),
-            np.asarray(1.0 + g * per_pa * height),
+            np.exp(g * per_pa * height),
         )
 
     def expected(self, tag: str, state: State) -> FloatArray:

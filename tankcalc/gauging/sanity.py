@@ -74,8 +74,7 @@ def impossible_density(model: Model, groups: Sequence[Group]) -> Iterator[Notice
 
 def needs_pressure(model: Model) -> bool:
     """Return whether the vapour's density follows from a pressure that has to be known."""
-    vapour = model.case.tank.vapour or model.case.fluid.vapour
-    return vapour is not None and vapour.density_kg_m3 is None
+    return model.vapour_thins
 
 
 def blanket_unread(model: Model, by: str) -> Notice:

@@ -2,18 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import replace
 from typing import Any
 
 import numpy as np
 
+from tankcalc.gauging.amounts import free_water_m3
 from tankcalc.gauging.case import Case, FloatArray
 from tankcalc.gauging.estimate import fit
 from tankcalc.gauging.inputs import Input
 from tankcalc.gauging.model import Model, State
 from tankcalc.gauging.observations import observations_of
+from tankcalc.gauging.standard import standard
 from tankcalc.gauging.state import Found
+from tankcalc.gauging.under_roof import surface_under_roof
 
 
 def outputs_of_spread(
@@ -43,9 +46,10 @@ def outputs_of_spread(
         if kind == "factor":
             factor = factor * (1.0 + moved[name])
     state = _solved(other, found, factor, moved, rows)
-    outputs = _outputs(other, state)
+    standard_of = _standard_volume(model, found, moved, kinds)
+    outputs = _outputs(other, state, standard_of)
     if "water level" in moved:
-        _add_water(model, found, outputs, moved["water level"])
+        _add_water(model, found, outputs, moved["water level"], standard_of)
     scale = 1.0 + moved.get("geometry", np.zeros(rows))
     return {
         key: value * scale
@@ -77,7 +81,11 @@ def _moved_model(
         name: np.broadcast_to(value, (rows,)) + moved.get(name.rsplit("_", 1)[0], none)
         for name, value in case.given.items()
     }
-    tank = replace(case.tank, transmitters=transmitters)
+    roof = case.tank.floating_roof
+    if roof is not None and "roof" in moved:
+        heavier: Any = roof.mass_kg + moved["roof"]
+        roof = replace(roof, mass_kg=heavier)
+    tank = replace(case.tank, transmitters=transmitters, floating_roof=roof)
     conditions = replace(case.conditions, **around)
     other = replace(case, tank=tank, conditions=conditions, given=given, shape=(rows,))
     return Model(other, 1.0 + moved.get("vapour density", none))
@@ -129,6 +137,10 @@ def _direct_surface(
     """Return the surfaces of a given level, volume or mass, with what else it rests on moved."""
     vessel, given = model.case.tank.vessel, model.case.given
     size = 1.0 + moved.get("geometry", np.zeros(rows))
+    if model.case.tank.floating_roof is not None and found.by in ("volume_m3", "mass_kg"):
+        start = State(np.ones(rows), factor, np.ones(rows))
+        amount = np.asarray(given[found.by] / size)
+        return surface_under_roof(model, start, amount, by_mass=found.by == "mass_kg")
     if found.by == "volume_m3":
         volume = given["volume_m3"] / size
         least = float(vessel.volume(vessel.z_min))
@@ -141,16 +153,52 @@ def _direct_surface(
     return np.broadcast_to(level, (rows,))
 
 
-def _outputs(model: Model, state: State) -> dict[str, FloatArray]:
+StandardVolume = Callable[[State, FloatArray, FloatArray], FloatArray]
+"""Standard volume of states, from the product's volume (m3) and mass (kg); NaN where unknown."""
+
+
+def _standard_volume(
+    model: Model, found: Found, moved: dict[str, FloatArray], kinds: dict[str, str]
+) -> StandardVolume:
+    """Return how the standard volume follows from a moved answer.
+
+    Notes
+    -----
+    Mass over reference density. The reference density moves with the density, but not with the
+    temperature where it is stated and the density in the tank follows from it; where the readings
+    show the density in the tank, the temperature moves the reference. Both to first order.
+    """
+    base = replace(found.state, surface_m=np.clip(found.state.surface_m, *_ends(model)))
+    volume, product, _ = model.contents(base)
+    at_base = standard(model, base, volume - free_water_m3(model.case, base.surface_m), product)
+    own, reference = model.case.readings.ctl, at_base.density_kg_m3
+    warmed: FloatArray | float = 1.0
+    for name, kind in kinds.items():
+        if name == "temperature":
+            warmed = warmed * (1.0 + moved[name] * (1.0 if kind == "factor" else -1.0))
+
+    def volume_of(state: State, volume_m3: FloatArray, mass_kg: FloatArray) -> FloatArray:
+        if own is not None:
+            return volume_m3 * own
+        if reference is None:
+            return np.full(volume_m3.shape, np.nan)
+        scale = state.factor / float(base.factor)
+        if state.factor.shape == np.shape(warmed):
+            scale = scale / warmed
+        return np.asarray(mass_kg / (float(reference) * scale))
+
+    return volume_of
+
+
+def _ends(model: Model) -> tuple[float, float]:
+    return model.case.tank.vessel.z_min, model.case.tank.vessel.z_max
+
+
+def _outputs(model: Model, state: State, standard_of: StandardVolume) -> dict[str, FloatArray]:
     """Return level, volumes, masses and density of states; a surface past an end is at the end."""
-    vessel = model.case.tank.vessel
-    inside = replace(state, surface_m=np.clip(state.surface_m, vessel.z_min, vessel.z_max))
+    inside = replace(state, surface_m=np.clip(state.surface_m, *_ends(model)))
     volume, product, water = model.contents(inside)
-    top = model.case.liquid.water_top_m
-    water_volume: FloatArray | float = 0.0
-    if top is not None:
-        held = min(max(top, vessel.z_min), vessel.z_max)
-        water_volume = vessel.volume(np.minimum(inside.surface_m, held))
+    water_volume = free_water_m3(model.case, inside.surface_m)
     mass = product + water
     with np.errstate(divide="ignore", invalid="ignore"):
         density = np.where(volume > 0.0, mass / volume, 0.0)
@@ -161,11 +209,16 @@ def _outputs(model: Model, state: State) -> dict[str, FloatArray]:
         "mass_kg": mass,
         "product_mass_kg": product,
         "density_kg_m3": density,
+        "standard_volume_m3": standard_of(state, volume - water_volume, product),
     }
 
 
 def _add_water(
-    model: Model, found: Found, outputs: dict[str, FloatArray], moved_m: FloatArray
+    model: Model,
+    found: Found,
+    outputs: dict[str, FloatArray],
+    moved_m: FloatArray,
+    standard_of: StandardVolume,
 ) -> None:
     """Add the effect of the water's top: its layer ends elsewhere, so two columns are solved."""
     top = model.case.liquid.water_top_m
@@ -176,7 +229,7 @@ def _add_water(
         read = replace(case.readings, water_level_m=top + side)
         moved_case = replace(Case.of(case.tank, case.fluid, read), shape=(1,))
         other = Model(moved_case, model.vapour_scale)
-        ends.append(_outputs(other, _solved(other, found, np.ones(1), {}, 1)))
+        ends.append(_outputs(other, _solved(other, found, np.ones(1), {}, 1), standard_of))
     for key, value in outputs.items():
         slope = float((ends[1][key] - ends[0][key])[0]) / (2.0 * step)
         outputs[key] = value + slope * moved_m

@@ -46,6 +46,8 @@ class Surroundings:
         Outside temperature, K; None where the site states none.
     gravity_uncertainty_m_s2, air_uncertainty_kg_m3 : float or None
         Standard uncertainties, where the site states them.
+    standard_temperature_k : float
+        Base of standard volumes where the liquid's own figures state none, K.
     """
 
     gravity_m_s2: float
@@ -57,6 +59,7 @@ class Surroundings:
     air_temperature_k: float | None = None
     gravity_uncertainty_m_s2: float | None = None
     air_uncertainty_kg_m3: float | None = None
+    standard_temperature_k: float = ICE_POINT_K + 15.0
 
 
 def surroundings(
