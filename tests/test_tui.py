@@ -455,10 +455,10 @@ def test_esc_leaves_the_field_and_loses_nothing_and_a_digit_goes_back(tmp_path: 
 
 def test_down_reaches_the_fields_below_and_says_how_many(tmp_path: Path) -> None:
     async def story(console: Console) -> None:
-        await console.wait("8 more below")
+        await console.wait("9 more below")
         await console.press(*["down"] * 6)
         await console.wait(">density")
-        await console.wait("5 more below")
+        await console.wait("6 more below")
 
     play(story, tmp_path)
 

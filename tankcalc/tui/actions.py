@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+from functools import partial
 from typing import TYPE_CHECKING
 
+from tankcalc.errors import TankcalcError
 from tankcalc.text import clean
+from tankcalc.tui.defects import note_defect
 from tankcalc.tui.fields import label_of
 from tankcalc.tui.help_text import help_lines
+from tankcalc.tui.liquid_draft import LiquidDraft, opened
 from tankcalc.tui.log_lines import clock
 from tankcalc.tui.logbook import Unsaved
 from tankcalc.tui.present import (
@@ -19,6 +23,7 @@ from tankcalc.tui.present import (
 )
 from tankcalc.tui.screens.ask import AskQuit
 from tankcalc.tui.screens.detail import DetailScreen, Page
+from tankcalc.tui.screens.liquid import Kept, LiquidScreen
 from tankcalc.tui.screens.note import SaveNote
 from tankcalc.tui.screens.pick import PickFluid
 from tankcalc.tui.screens.read import ReadScreen
@@ -115,7 +120,25 @@ class Actions:
             pages.append(("uncertainty", self._uncertainty))
             pages.append(("corrections", self._corrections))
             pages.append(("agreement", self._agreement))
+            pages.append(("sums", self._sums))
         self._app.push_screen(DetailScreen(title, pages))
+
+    def liquid(self) -> None:
+        """Try a liquid, beginning from the one in the tank."""
+        site, answer = self._desk.site, self._app.front.answer
+        if site is None or answer.tank is None:
+            return self._app.main.say(answer.why or NOT_READY)
+        chosen = self._desk.entry.fluid or answer.tank.contents
+        said = ""
+        try:
+            draft = opened(site, chosen) if chosen in site.fluid_names() else LiquidDraft()
+        except TankcalcError as error:
+            draft, said = LiquidDraft(), str(error)
+        draft.temperature = self._desk.entry.fields.get("temperature", "")
+        note = partial(note_defect, self._app.options.state)
+        screen = LiquidScreen(self._desk, site, answer.tank, draft, note, said)
+        self._app.push_screen(screen, self._tried)
+        return None
 
     def quit(self) -> None:
         """Ask, and leave."""
@@ -129,6 +152,19 @@ class Actions:
             self._desk.entry.unsaved = None
             self._app.keep_draft()
             self._app.front.show_answer()
+
+    def _tried(self, kept: Kept | None) -> None:
+        """Calculate with what was saved, and show the units chosen meanwhile."""
+        self._app.front.show_header()
+        self._app.front.show_log()
+        if kept is None:
+            return self._app.front.show_answer()
+        self._desk.forget_fluids()
+        self._app.front.show_answer(kept.words)
+        fluid = self._app.front.answer.fluid
+        if fluid is None or fluid.file != kept.stem:
+            self._app.main.say(f"{kept.words} F4 chooses it for this tank.")
+        return None
 
     def _entry(self) -> tuple[Unsaved, Answer, bool]:
         """Return the entry, the answer in it, and whether it was sent before and not saved."""
@@ -234,6 +270,20 @@ class Actions:
         lines: list[Line] = []
         for line in words(found, self._desk.units):
             lines += wrapped(line, "", width)
+        return lines
+
+    def _sums(self, width: int) -> list[Line]:
+        """Return the working from observed volume to weight, in both ways of rounding."""
+        from tankcalc.report import sums_table
+        from tankcalc.sums import ROUNDINGS, sums
+
+        answer, shown = self._app.front.answer, self._desk.units
+        if answer.tank is None or answer.fluid is None or answer.readings is None:
+            return []
+        lines: list[Line] = []
+        for rounding in ROUNDINGS:
+            found = sums(answer.tank, answer.fluid, answer.readings, rounding, shown)
+            lines += [*table(sums_table(found, rounding)), []]
         return lines
 
     def _in_full(self, width: int) -> list[Line]:

@@ -14,7 +14,8 @@ class Command:
     id : str
         Name of the action.
     key : str
-        Function key, as the terminal library names it ("f5").
+        Function key, as the terminal library names it ("f5"); there are ten that every
+        terminal passes on, and Ctrl with a letter after that.
     letter : str
         What to press instead where no field is being typed in.
     label : str
@@ -39,8 +40,8 @@ class Command:
 
     @property
     def shown_key(self) -> str:
-        """The function key as it is printed on the keyboard."""
-        return self.key.upper()
+        """The key as it is printed on the keyboard."""
+        return self.key.title()
 
 
 NAMES = {"?": "question_mark"}
@@ -56,6 +57,14 @@ COMMANDS = (
     Command("shift", "f7", "s", "shift", "Go to the log of this shift; up and down move in it.", 4),
     Command("clear", "f8", "c", "clear", "Clear the readings; once more brings them back.", 3),
     Command("details", "f9", "d", "all", "Every figure and every warning in full.", 2),
+    Command(
+        "liquid",
+        "ctrl+r",
+        "r",
+        "try",
+        "Try the density profile of a liquid: model, figures, curves; and save it as a fluid.",
+        5,
+    ),
     Command("quit", "f10", "q", "quit", "Leave; asks first, and keeps an unfinished entry."),
 )
 

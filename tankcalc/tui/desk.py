@@ -135,6 +135,12 @@ class Desk:
         self._tanks = {**sound, **self._tanks}
         self.broken = dict(broken)
 
+    def forget_fluids(self) -> None:
+        """Read the fluids again: a file was written. What was not saved rests on the old one."""
+        self._fluids.clear()
+        for entry in self._entries.values():
+            entry.unsaved = None
+
     @property
     def entry(self) -> Entry:
         """What was typed for the tank in front."""

@@ -42,6 +42,7 @@ FIELDS = (
     Field("volume", "volume", later=True),
     Field("mass", "mass", later=True),
     Field("sediment_water", "sediment", later=True),
+    Field("ctl", "factor CTL", later=True),
     Field("barometer", "barometer", later=True),
     Field("air_temperature", "air temp.", later=True),
     Field("leg_temperature", "leg temp.", later=True),
