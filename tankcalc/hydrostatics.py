@@ -156,6 +156,17 @@ class Filling:
         """Return the mass (kg) where volume (m3) and first moment (m4) are known already."""
         if self.column.bulk_modulus_pa is not None:
             return self._compressed_mass(surface_m)
+        stretch = self.vessel.stretch
+        if stretch is not None:
+            volume_m3, moment_m4 = self._still.volume_and_moment(surface_m)
+            rigid = self._rigid_mass(surface_m, volume_m3, moment_m4)
+            return rigid + stretch.mass_gain(self.column.density, self._jumps, surface_m)
+        return self._rigid_mass(surface_m, volume_m3, moment_m4)
+
+    def _rigid_mass(
+        self, surface_m: FloatArray, volume_m3: FloatArray, moment_m4: FloatArray
+    ) -> FloatArray:
+        """Return the mass (kg) in the vessel without its stretch under the head."""
         start, plain, sloped = self._pieces
         if len(start) == 1:
             return np.asarray(start[0] + plain[0] * volume_m3 + sloped[0] * moment_m4)
@@ -184,6 +195,17 @@ class Filling:
         return rising_root(mass_and_slope, np.clip(mass, least, most), low, high)
 
     @cached_property
+    def _still(self) -> Vessel:
+        """The vessel without its stretch under the head."""
+        return self.vessel.unstretched
+
+    @cached_property
+    def _jumps(self) -> list[float]:
+        """Elevations between layers (m), where density jumps."""
+        jumps: list[float] = self.column.edges_m[np.diff(self.column.layer) != 0].tolist()
+        return jumps
+
+    @cached_property
     def _edges(self) -> FloatArray:
         edges = self.column.edges_m
         return edges[(edges > self.vessel.z_min) & (edges < self.vessel.z_max)]
@@ -198,7 +220,7 @@ class Filling:
         plain = column.density_kg_m3[inside] - sloped * column.at_m[inside]
         start = np.zeros(len(bounds))
         if len(edges):
-            volume, moment = self.vessel.volume_and_moment(edges)
+            volume, moment = self._still.volume_and_moment(edges)
             steps = (plain[:-1] - plain[1:]) * volume + (sloped[:-1] - sloped[1:]) * moment
             start[1:] = np.cumsum(steps)
         return start, plain, sloped

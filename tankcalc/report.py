@@ -10,7 +10,7 @@ from tankcalc import units
 from tankcalc.result import Result
 
 if TYPE_CHECKING:
-    from tankcalc.sums import Line, Rounding
+    from tankcalc.sums import Sums
     from tankcalc.terms import Term
     from tankcalc.uncertainty import Budget
 
@@ -152,19 +152,20 @@ def _cells(name: str, own: str, level: str, volume: str, mass: str) -> str:
     return f"{name:<18}{own:>13}{level:>17}{volume:>15}{mass:>15}"
 
 
-def sums_table(lines: tuple[Line, ...], rounding: Rounding) -> str:
+def sums_table(found: Sums) -> str:
     """Return the working from the observed volume to the weight, a line for every factor."""
-    if not lines:
-        return "The readings are refused: there is no working."
-    shown = [f"Observed volume to weight, {ROUNDED[rounding]}"]
-    for line in lines:
+    if not found.lines:
+        return found.remark
+    shown = [f"Observed volume to weight, {ROUNDED[found.rounding]}"]
+    for line in found.lines:
         value = f"{line.value:.{line.places}f} {line.unit}".rstrip()
         head = f"  {line.symbol:<5}{value:>20}  "
         made_of = textwrap.wrap(line.working, WIDTH - 1 - len(head)) or [""]
         shown.append(head + made_of[0])
         shown += [" " * len(head) + more for more in made_of[1:]]
-    known = ", ".join(f"{line.symbol} {line.name}" for line in lines)
-    return "\n".join([*shown, *wrapped(f"{known}.")])
+    known = ", ".join(f"{line.symbol} {line.name}" for line in found.lines)
+    remark = wrapped(found.remark) if found.remark else []
+    return "\n".join([*shown, *wrapped(f"{known}."), *remark])
 
 
 def terms_table(terms: tuple[Term, ...], system: units.System) -> str:

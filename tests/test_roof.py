@@ -121,3 +121,19 @@ def test_the_roof_s_mass_is_an_input_of_the_mass() -> None:
     assert share.contributions["level_m"] == pytest.approx(0.0, abs=1e-12)
     resting = assess(ROOFED, single(850.0), Readings(level_m=1.0))
     assert "roof" not in {s.name for s in resting.shares}
+
+
+@pytest.mark.parametrize(("level", "water"), [(10.0, 9.8), (2.3, 2.2), (2.4, 2.4)])
+def test_a_roof_that_reaches_into_the_water_is_refused(level: float, water: float) -> None:
+    read = Readings(level_m=level, water_level_m=water)
+    found = evaluate(ROOFED, single(850.0), read)
+    assert found.status == "refused"
+    assert [n.code for n in found.refusals] == ["roof_in_water"]
+    enough = evaluate(ROOFED, single(850.0), replace(read, level_m=water + 0.6))
+    assert enough.status != "refused"
+    assert enough.product_volume_m3 == pytest.approx(AREA * 0.6 - 150_000.0 / 850.0, rel=1e-9)
+
+
+def test_nothing_in_the_tank_is_nothing() -> None:
+    for read in (Readings(mass_kg=0.0), Readings(volume_m3=0.0)):
+        assert evaluate(ROOFED, single(850.0), read).level_m == 0.0

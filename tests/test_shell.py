@@ -218,8 +218,8 @@ def test_a_mean_temperature_over_the_height_warms_the_shell() -> None:
         level_m=10.0, temperatures=((2.0, 293.15), (6.0, 303.15)), air_temperature_k=288.15
     )
     found = evaluate(upright(shell=replace(STEEL, insulated=True)), single(oil), read)
-    # Held at 20 degC to 2 m, then rising to 30 degC at 6 m: (2 x 20 + 4 x 25) / 6.
-    mean = (2.0 * 20.0 + 4.0 * 25.0) / 6.0
+    # Held at 20 degC to 2 m, rising to 30 degC at 6 m, held to the surface at 10 m.
+    mean = (2.0 * 20.0 + 4.0 * 25.0 + 4.0 * 30.0) / 10.0
     assert found.ctsh == pytest.approx((1.0 + 1.12e-5 * (mean - 15.0)) ** 2, rel=1e-13)
 
 
@@ -245,3 +245,49 @@ def test_arrays_take_the_load_as_single_readings_do() -> None:
     ones = [evaluate(tank, single(850.0), Readings(p1_pa=float(p), **warm)) for p in pressures]
     assert many.volume_m3 == pytest.approx([one.volume_m3 for one in ones], rel=1e-12)
     assert many.mass_kg == pytest.approx([one.mass_kg for one in ones], rel=1e-12)
+
+
+def test_water_at_the_bottom_lies_where_the_shell_is_stretched_most() -> None:
+    """D 80 m, 20 mm, 206 GPa, 12 m of 850 kg/m3 with 2 m of water: by quadrature, ring by ring."""
+    shell = Shell(thickness_m=(0.020,), courses_m=((0.0, 15.0, 40.0),), modulus_pa=2.06e11)
+    wide = vertical_cylinder([(15.0, 80.0)], FlatEnd(), FlatEnd())
+    tank = upright(vessel=wide, shell=shell, transmitters=transmitters(p1=0.3))
+    fluid = stacked((1000.0, 2.0), (850.0, None))
+    found = evaluate(tank, fluid, Readings(level_m=12.0))
+    mean = (2.0 * 1000.0 + 13.0 * 850.0) / 15.0  # the one density that stands for the head
+
+    def area(z: float) -> float:
+        grown = 2.0 * np.pi * 40.0**3 * mean * 9.81 * (12.0 - z) / (2.06e11 * 0.020)
+        return float(np.pi * 1600.0 + grown)
+
+    water, product = quad(area, 0.0, 2.0)[0], quad(area, 2.0, 12.0)[0]
+    assert found.water_volume_m3 == pytest.approx(water, rel=1e-12)
+    assert found.product_volume_m3 == pytest.approx(product, rel=1e-12)
+    assert found.mass_kg == pytest.approx(1000.0 * water + 850.0 * product, rel=1e-12)
+    (bottom, top) = found.layers
+    assert (bottom.volume_m3, top.volume_m3) == pytest.approx((water, product), rel=1e-12)
+    by_pressure = evaluate(tank, fluid, Readings(p1_pa=found.p1_pa))
+    assert by_pressure.heel_volume_m3 == pytest.approx(quad(area, 0.0, 0.3)[0], rel=1e-12)
+    by_mass = evaluate(tank, fluid, Readings(mass_kg=found.mass_kg))
+    assert by_mass.level_m == pytest.approx(12.0, abs=1e-9)
+
+
+def test_a_density_that_falls_with_height_is_weighed_where_the_shell_is_wide() -> None:
+    shell = Shell(thickness_m=(0.01,), courses_m=((0.0, 15.0, 10.0),), modulus_pa=2.06e11)
+    oil = Expansion(845.0, 288.15, 8.3e-4)
+    read = Readings(level_m=12.0, temperatures=((1.0, 278.15), (6.0, 301.15), (11.0, 349.15)))
+    found = evaluate(upright(shell=shell), single(oil), read)
+    bare = evaluate(upright(), single(oil), read)
+    column = [float(np.interp(z, (1.0, 6.0, 11.0), (278.15, 301.15, 349.15)))
+              for z in np.linspace(0.0, 15.0, 3001)]  # fmt: skip
+    mean = float(np.mean(oil.density(np.asarray(column))))
+
+    def gain(z: float) -> float:
+        kelvin = np.interp(z, (1.0, 6.0, 11.0), (278.15, 301.15, 349.15))
+        grown = 2.0 * np.pi * 1000.0 * mean * 9.81 * (12.0 - z) / (2.06e11 * 0.01)
+        return float(grown * oil.density(np.asarray(kelvin)))
+
+    wanted = quad(gain, 0.0, 12.0, points=(1.0, 6.0, 11.0))[0]
+    # Simpson's rule between courses and layers, and a mean density read off a coarse grid.
+    assert found.mass_kg - bare.mass_kg == pytest.approx(wanted, rel=2e-3)
+    assert found.mass_kg == pytest.approx(bare.mass_kg + wanted, rel=1e-6)

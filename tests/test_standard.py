@@ -81,7 +81,7 @@ def test_pressure_temperatures_and_a_dip_tell_the_reference_density() -> None:
     read = Readings(level_m=10.0, temperatures=((1.0, 298.15), (9.0, 308.15)))
     pressure = evaluate(upright(), single(true), read).p1_pa
     found = evaluate(upright(), single(GAS_OIL), replace(read, p1_pa=pressure))
-    # The profile is scaled as a whole, its slope with temperature being that of 845 kg/m3: 0.02.
+    # The profile is scaled as a whole, its slope with temperature being that of 845 kg/m3.
     assert found.reference_density_kg_m3 == pytest.approx(861.0, abs=0.02)
 
 
@@ -91,6 +91,38 @@ def test_an_observed_density_goes_back_to_the_base_by_the_equations() -> None:
     found = evaluate(upright(), single(GAS_OIL), read)
     assert found.reference_density_kg_m3 == pytest.approx(861.0, abs=1e-6)
     assert found.standard_volume_m3 == pytest.approx(1000.0 * np.pi * observed / 861.0, rel=1e-9)
+
+
+@pytest.mark.parametrize(
+    ("vessel", "levels", "kelvins"),
+    [
+        (sphere(12.0), (1.0, 4.0, 7.5), (278.15, 283.15, 313.15)),
+        (upright().vessel, (1.0, 5.0), (283.15, 313.15)),
+        (upright().vessel, (1.0, 4.0), (283.15, 303.15)),
+    ],
+)
+def test_an_observed_density_is_that_of_the_mean_liquid(
+    vessel: object, levels: tuple[float, ...], kelvins: tuple[float, ...]
+) -> None:
+    """The reference density solves mass = rho_ref times the integral of A CTL(rho_ref, T) dz."""
+    tank, top = upright(vessel=vessel), 8.0
+    read = Readings(
+        level_m=top, temperatures=tuple(zip(levels, kelvins, strict=True)), density_kg_m3=690.0
+    )
+    found = evaluate(tank, single(Petroleum("gasoline", 700.0, 288.15)), read)
+    other = Petroleum("gasoline", float(found.reference_density_kg_m3), 288.15)
+
+    def factor(z: float) -> float:
+        kelvin = float(np.interp(z, levels, kelvins))
+        return float(other.density(np.asarray(kelvin))) / other.reference_kg_m3
+
+    whole = quad(lambda z: vessel.area(z) * factor(z), 0.0, top, points=levels, limit=200)[0]  # type: ignore[attr-defined]
+    mass = 690.0 * float(found.volume_m3)
+    assert found.reference_density_kg_m3 == pytest.approx(mass / whole, rel=2e-6)
+    # The same profile said with one more element up to the surface changes nothing.
+    more = replace(read, temperatures=(*read.temperatures, (top - 1e-6, kelvins[-1])))
+    again = evaluate(tank, single(Petroleum("gasoline", 700.0, 288.15)), more)
+    assert again.standard_volume_m3 == pytest.approx(found.standard_volume_m3, rel=1e-8)
 
 
 def test_a_density_outside_the_equations_leaves_the_rest_standing() -> None:

@@ -21,7 +21,7 @@ if TYPE_CHECKING:
     from tankcalc.fluids.fluid import Fluid
     from tankcalc.readings import Readings
     from tankcalc.result import Result
-    from tankcalc.sums import Line, Rounding
+    from tankcalc.sums import Rounding, Sums
     from tankcalc.tank import Tank
     from tankcalc.units import System
 
@@ -75,7 +75,7 @@ def run(args: argparse.Namespace) -> int:
     found = explain(tank, fluid, readings, typed) if doubted else None
     if args.json:
         working = _sums(args, tank, fluid, readings, system)
-        _print_json(result, found, working, ROUNDINGS[args.rounding])
+        _print_json(result, found, working)
     else:
         _print_text(result, found, system)
     if result.status == "refused":
@@ -122,8 +122,9 @@ def _print_working(
     if args.sums and not args.json:
         from tankcalc.report import sums_table
 
-        working = _sums(args, tank, fluid, readings, system) or ()
-        print(f"\n{sums_table(working, ROUNDINGS[args.rounding])}")
+        working = _sums(args, tank, fluid, readings, system)
+        if working is not None:
+            print(f"\n{sums_table(working)}")
     if args.terms:
         from tankcalc.report import terms_table
         from tankcalc.terms import terms
@@ -133,7 +134,7 @@ def _print_working(
 
 def _sums(
     args: argparse.Namespace, tank: Tank, fluid: Fluid, readings: Readings, system: System
-) -> tuple[Line, ...] | None:
+) -> Sums | None:
     """Return the working, None where it was not asked for."""
     if not args.sums:
         return None
@@ -142,9 +143,7 @@ def _sums(
     return sums(tank, fluid, readings, ROUNDINGS[args.rounding], system)
 
 
-def _print_json(
-    result: Result, found: Disagreement | None, working: tuple[Line, ...] | None, rounding: str
-) -> None:
+def _print_json(result: Result, found: Disagreement | None, working: Sums | None) -> None:
     import json
 
     from tankcalc.result import as_json
@@ -159,9 +158,9 @@ def _print_json(
                 "unit": line.unit,
                 "working": line.working,
             }
-            for line in working
+            for line in working.lines
         ]
-        data["sums"] = {"rounding": rounding, "lines": lines}
+        data["sums"] = {"rounding": working.rounding, "lines": lines, "remark": working.remark}
     if found is not None:
         data["explanations"] = [
             {

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import replace
 from typing import Any
 
@@ -62,7 +63,18 @@ def amounts(model: Model, state: State, by: str) -> tuple[dict[str, Any], tuple[
         "room_m3": _room(model, state, volume),
         "pumpable_m3": _pumpable(model, state, volume),
     }
-    return known | _at_base(case, at_base) | _heel(model, state, by), at_base.notices
+    figures = known | _at_base(case, at_base) | _heel(model, state, by)
+    return figures, (*at_base.notices, *_unused(case, at_base))
+
+
+def _unused(case: Case, at_base: Standard) -> Iterator[Notice]:
+    """Say so where sediment and water were given and there is nothing to take them off."""
+    if case.readings.sediment_water is not None and at_base.volume_m3 is None:
+        message = (
+            "Sediment and water come off the standard volume, which this liquid has none of: no "
+            "figure is net of them."
+        )
+        yield Notice("sediment_water_unused", message, "sediment_water")
 
 
 def _at_base(case: Case, at_base: Standard) -> dict[str, Any]:
@@ -103,7 +115,10 @@ def _heel(model: Model, state: State, by: str) -> dict[str, FloatArray | None]:
         return {"heel_volume_m3": None, "heel_mass_kg": None}
     tap = np.minimum(min(taps[by], case.tank.vessel.z_max), state.surface_m)
     volume, product, water = model.without_roof().contents(replace(state, surface_m=tap))
-    return {"heel_volume_m3": volume, "heel_mass_kg": product + water}
+    under_load = case.tank.vessel.volume_below(tap, state.surface_m)
+    with np.errstate(invalid="ignore"):
+        wider = np.where(volume > 0.0, under_load / volume, 1.0)
+    return {"heel_volume_m3": under_load, "heel_mass_kg": wider * (product + water)}
 
 
 def weight_in_air(mass_kg: FloatArray, volume_m3: FloatArray) -> FloatArray:
@@ -133,7 +148,7 @@ def free_water_m3(case: Case, level_m: FloatArray) -> FloatArray:
         return np.zeros(level_m.shape)
     vessel = case.tank.vessel
     upper = np.minimum(level_m, min(max(top, vessel.z_min), vessel.z_max))
-    return np.asarray(vessel.volume(upper))
+    return np.asarray(vessel.volume_below(upper, level_m))
 
 
 def _water_level(case: Case, level_m: FloatArray) -> FloatArray:
@@ -181,7 +196,8 @@ def layer_shares(model: Model, state: State) -> tuple[LayerShare, ...]:
         top = level if layer.top_m is None else min(layer.top_m, level)
         if top <= bottom:
             continue
-        volume = float(vessel.volume(top)) - float(vessel.volume(bottom))
+        ends = vessel.volume_below(np.array([bottom, top]), np.asarray(level))
+        volume = float(ends[1] - ends[0])
         is_water = index == 0 and case.liquid.water_top_m is not None
         factor = 1.0 if is_water else float(state.factor)
         density = factor * float(case.column.areal_mass(bottom, top)) / (top - bottom)

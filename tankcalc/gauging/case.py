@@ -51,8 +51,10 @@ class Case:
     shell: ShellState = field(default_factory=ShellState)
 
     @classmethod
-    def of(cls, tank: Tank, fluid: Fluid, readings: Readings) -> Case:
-        """Make a case ready.
+    def of(
+        cls, tank: Tank, fluid: Fluid, readings: Readings, surface_m: float | None = None
+    ) -> Case:
+        """Make a case ready; ``surface_m`` where the surface is known already (m).
 
         Raises
         ------
@@ -76,7 +78,9 @@ class Case:
             if value is not None
         }
         shape = np.broadcast_shapes(*(value.shape for value in given.values()))
-        liquid = liquid_in(tank, fluid, readings).under(_gauge_pa(tank, given, conditions))
+        liquid = liquid_in(tank, fluid, readings, surface_m).under(
+            _gauge_pa(tank, given, conditions)
+        )
         tank, shell = tank_as_it_stands(tank, liquid, air_k, around.gravity_m_s2)
         return cls(tank, fluid, readings, conditions, liquid, given, shape, shell)
 

@@ -16,7 +16,7 @@ from tankcalc.gauging.doubts import doubts
 from tankcalc.gauging.model import Model
 from tankcalc.gauging.solve import solve
 from tankcalc.gauging.state import Found
-from tankcalc.gauging.under_roof import critical_zone, in_critical_zone
+from tankcalc.gauging.under_roof import critical_zone, in_critical_zone, roof_in_water, roof_sunk
 from tankcalc.readings import Readings
 from tankcalc.result import Notice, Result, Status
 from tankcalc.tank import Tank
@@ -67,6 +67,10 @@ def evaluate(tank: Tank, fluid: Fluid, readings: Readings) -> Result:
         if np.any(landing):
             notices.append(critical_zone(model, where_of(landing)))
             refused = refused | landing
+        sunk = roof_in_water(model, state) & ~refused
+        if np.any(sunk):
+            notices.append(roof_sunk(where_of(sunk)))
+            refused = refused | sunk
     if np.all(refused):
         return _refused(model, found, tuple(notices))
     return _result(model, found, refused, tuple(notices))

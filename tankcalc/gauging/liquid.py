@@ -32,8 +32,11 @@ class Liquid:
         Top of the free water above the datum, m; None where there is none.
     temperature_k : float or None
         Temperature of the liquid nearest the surface, K, where one is known.
+    temperatures : Temperatures or None
+        Over elevation; None where none is known.
     mean_temperature_k : float or None
-        Mean over the height from the bottom of the vessel to the highest element, K.
+        Mean over the height from the bottom of the vessel to the surface, K; to the highest
+        element where the surface is not known yet.
     product : DensityModel
         Of the uppermost liquid, as its profile has it; an observed density does not replace it.
     notices : tuple of Notice
@@ -41,16 +44,20 @@ class Liquid:
     pressure_factor : float
         Density of the uppermost liquid against that at outside pressure (CPL); the column has it
         already.
+    gauge_pa : float
+        The pressure that this is for, Pa gauge.
     """
 
     layers: tuple[Layer, ...]
     column: Column
     water_top_m: float | None
     temperature_k: float | None
+    temperatures: Temperatures | None
     mean_temperature_k: float | None
     product: DensityModel
     notices: tuple[Notice, ...]
     pressure_factor: float = 1.0
+    gauge_pa: float = 0.0
 
     def under(self, gauge_pa: float) -> Liquid:
         """Return the liquid under a pressure (Pa gauge), where its model says what that does.
@@ -68,10 +75,13 @@ class Liquid:
         if factor == 1.0:
             return self
         factors = [1.0] * (len(self.layers) - 1) + [factor]
-        return replace(self, column=self.column.scaled(factors), pressure_factor=factor)
+        column = self.column.scaled(factors)
+        return replace(self, column=column, pressure_factor=factor, gauge_pa=gauge_pa)
 
 
-def liquid_in(tank: Tank, fluid: Fluid, readings: Readings) -> Liquid:
+def liquid_in(
+    tank: Tank, fluid: Fluid, readings: Readings, surface_m: float | None = None
+) -> Liquid:
     """Return the liquid that the profile and the readings describe.
 
     Parameters
@@ -82,6 +92,8 @@ def liquid_in(tank: Tank, fluid: Fluid, readings: Readings) -> Liquid:
         The density profile.
     readings : Readings
         Temperatures, water level and observed density are used here.
+    surface_m : float or None
+        The surface where it is known already, m; for the mean temperature.
 
     Raises
     ------
@@ -97,21 +109,25 @@ def liquid_in(tank: Tank, fluid: Fluid, readings: Readings) -> Liquid:
         column,
         free_water_top(layers),
         temperatures.values_k[-1] if temperatures else None,
-        _mean_k(temperatures, tank.vessel.z_min) if temperatures else None,
+        temperatures,
+        _mean_k(temperatures, tank.vessel.z_min, surface_m) if temperatures else None,
         fluid.layers[-1].model,
         notices,
     )
 
 
-def _mean_k(temperatures: Temperatures, bottom_m: float) -> float:
-    """Return the mean temperature (K) over the height from the bottom to the highest element."""
+def _mean_k(temperatures: Temperatures, bottom_m: float, surface_m: float | None) -> float:
+    """Return the mean temperature (K) over the height of the liquid."""
     elevations, values = temperatures.elevations_m, temperatures.values_k
     if len(elevations) < 2:
         return values[-1]
-    z, k = np.asarray(elevations), np.asarray(values)
-    below = max(elevations[0] - bottom_m, 0.0) * values[0]
-    between = float(np.sum(0.5 * (k[:-1] + k[1:]) * np.diff(z)))
-    return (below + between) / (elevations[-1] - min(bottom_m, elevations[0]))
+    top = elevations[-1] if surface_m is None else max(surface_m, bottom_m)
+    bottom = min(bottom_m, elevations[0])
+    inside = [z for z in elevations if bottom < z < top]
+    z = np.array([bottom, *inside, top])
+    if not top > bottom:
+        return float(temperatures.at(z[:1])[0])
+    return float(np.trapezoid(temperatures.at(z), z) / (top - bottom))
 
 
 def free_water_top(layers: tuple[Layer, ...]) -> float | None:

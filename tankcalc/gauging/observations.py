@@ -94,8 +94,10 @@ def accuracy_of(
     squares += (accuracy.of_span * (high - low) / accuracy.coverage) ** 2
     squares += (accuracy.of_limit * limit / accuracy.coverage) ** 2
     squares += (accuracy.per_kelvin * away) ** 2 / 3.0 + accuracy.drift**2 / 3.0
-    of_reading = accuracy.of_reading * reading / accuracy.coverage
-    return np.asarray(np.sqrt(squares + of_reading**2))
+    with np.errstate(invalid="ignore"):
+        # An infinite reading is refused later, as what it is.
+        of_reading = accuracy.of_reading * reading / accuracy.coverage
+        return np.asarray(np.sqrt(squares + of_reading**2))
 
 
 def pressure_uncertainty(

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from dataclasses import replace
 
+import numpy as np
+
 from tankcalc.fluids.fluid import Fluid
 from tankcalc.gauging.case import Case
 from tankcalc.gauging.model import Model
@@ -39,8 +41,18 @@ def solve(tank: Tank, fluid: Fluid, readings: Readings) -> tuple[Model, Found]:
         kept = tuple(p for p in model.case.readings.temperatures if p[0] not in hanging)
         model = Model(Case.of(tank, fluid, replace(model.case.readings, temperatures=kept)))
         found = find_state(model)
+    if _warms_unevenly(model) and not np.isnan(found.state.surface_m):
+        surface = float(found.state.surface_m)
+        model = Model(Case.of(tank, fluid, model.case.readings, surface))
+        found = find_state(model)
     notices = [*_signals(readings), *_elements(dropped), *_dry(model, found), *found.notices]
     return model, replace(found, notices=tuple(notices))
+
+
+def _warms_unevenly(model: Model) -> bool:
+    """Return whether the shell's temperature depends on where the surface is."""
+    case = model.case
+    return not case.shape and case.shell.factor is not None and len(case.readings.temperatures) > 1
 
 
 def _hanging(readings: Readings, found: Found) -> list[float]:

@@ -8,6 +8,7 @@ import numpy as np
 
 from tankcalc.constants import ICE_POINT_K
 from tankcalc.errors import RangeError
+from tankcalc.fluids.column import Column
 from tankcalc.fluids.models import DensityModel
 from tankcalc.gauging.case import Case, FloatArray
 from tankcalc.gauging.model import Model, State
@@ -42,6 +43,9 @@ class Standard:
 
 UNKNOWN = Standard()
 
+HALVINGS = 50
+"""Rounds in which a temperature between the coldest and the warmest element is found."""
+
 
 def standard(model: Model, state: State, volume_m3: FloatArray, mass_kg: FloatArray) -> Standard:
     """Return the product at its base temperature.
@@ -56,7 +60,8 @@ def standard(model: Model, state: State, volume_m3: FloatArray, mass_kg: FloatAr
     One composition at many temperatures: the integral of A(z) CTL(T(z)) dz is the mass over the
     reference density, because rho(z) = rho_ref CTL(T(z)). So no mean temperature enters, but
     where the readings show another density than the profile's: the liquid observed is then
-    brought to the base temperature by its model, from the mean temperature. Layers are added.
+    brought to the base temperature by its model, from the temperature at which the model has the
+    mean density of the liquid, the integral of A rho(T(z)) dz over the volume. Layers are added.
     A correction factor that the user gives replaces all of this.
     """
     case = model.case
@@ -118,15 +123,14 @@ def _standard_volume(
     model: Model, state: State, models: list[DensityModel], base_k: float, mass_kg: FloatArray
 ) -> FloatArray:
     """Return the sum over the product's layers of mass over reference density, m3."""
-    if len(models) == 1:
-        return np.asarray(mass_kg / _reference(model, state, models[0], base_k, top=True))
-    total, rest = np.zeros(mass_kg.shape), mass_kg
     first = len(model.case.liquid.layers) - len(models)
-    for index, one in enumerate(models[:-1]):
-        layer = _layer_mass(model, state, first + index)
-        total = total + layer / _reference(model, state, one, base_k, top=False)
+    total, rest = np.zeros(mass_kg.shape), mass_kg
+    for index, one in enumerate(models[:-1], start=first):
+        layer = _layer_mass(model, state, index)
+        total = total + layer / _reference(model, state, one, base_k, index)
         rest = rest - layer
-    return np.asarray(total + rest / _reference(model, state, models[-1], base_k, top=True))
+    last = first + len(models) - 1
+    return np.asarray(total + rest / _reference(model, state, models[-1], base_k, last))
 
 
 def _layer_mass(model: Model, state: State, index: int) -> FloatArray:
@@ -138,14 +142,58 @@ def _layer_mass(model: Model, state: State, index: int) -> FloatArray:
 
 
 def _reference(
-    model: Model, state: State, of: DensityModel, base_k: float, *, top: bool
+    model: Model, state: State, of: DensityModel, base_k: float, index: int
 ) -> FloatArray:
     """Return the density of a layer's liquid at the base temperature, kg/m3."""
+    liquid = model.case.liquid
+    top = index == len(liquid.layers) - 1
     observed = model.case.readings.density_kg_m3 if top else None
     if observed is None and np.all(state.factor == 1.0):
         return of.checked_density(np.asarray(base_k))
-    temperature = np.asarray(model.case.liquid.mean_temperature_k)
-    own = of.checked_density(temperature) if observed is None else observed
-    factors, where = np.unique(state.factor, return_inverse=True)
-    found = of.standard_density(factors * own, temperature, base_k)
-    return np.asarray(found)[where].reshape(state.factor.shape)
+    kelvin = _temperature_k(model, state, of, index)
+    own = of.checked_density(kelvin) if observed is None else np.asarray(observed)
+    pairs = np.stack(np.broadcast_arrays(state.factor * own, kelvin), axis=-1).reshape(-1, 2)
+    different, where = np.unique(pairs, axis=0, return_inverse=True)
+    found = of.standard_density(different[:, 0], different[:, 1], base_k)
+    return np.asarray(found)[np.ravel(where)].reshape(state.factor.shape)
+
+
+def _temperature_k(model: Model, state: State, of: DensityModel, index: int) -> FloatArray:
+    """Return the one temperature (K) at which a layer would be as dense as it is on the whole.
+
+    Of several temperatures: where the model's density is its mean over the layer, weighted by
+    the area at every elevation.
+    """
+    temperatures = model.case.liquid.temperatures
+    assert temperatures is not None
+    coldest, warmest = min(temperatures.values_k), max(temperatures.values_k)
+    if coldest == warmest:
+        return np.asarray(coldest)
+    wanted = _mean_density(model, state, of, index)
+    left = np.full(wanted.shape, coldest)
+    right = np.full(wanted.shape, warmest)
+    falls = bool(of.density(np.asarray(warmest)) < of.density(np.asarray(coldest)))
+    for _ in range(HALVINGS):
+        middle = 0.5 * (left + right)
+        warmer = (of.density(middle) > wanted) == falls
+        left, right = np.where(warmer, middle, left), np.where(warmer, right, middle)
+    return np.asarray(0.5 * (left + right))
+
+
+def _mean_density(model: Model, state: State, of: DensityModel, index: int) -> FloatArray:
+    """Return the mean density (kg/m3) of a model's liquid in a layer, at the temperatures there."""
+    case = model.case
+    layers, vessel = case.liquid.layers, case.tank.vessel.unstretched
+    column = Column.of([(of.pieces(case.liquid.temperatures), np.inf)])
+    filling = Filling(vessel, column, model.gravity)
+    below = vessel.z_min if index == 0 else layers[index - 1].top_m
+    above = layers[index].top_m
+    assert below is not None
+    low = np.minimum(np.clip(below, vessel.z_min, vessel.z_max), state.surface_m)
+    high = state.surface_m if above is None else np.minimum(state.surface_m, above)
+    high = np.maximum(high, low)
+    volume = np.asarray(vessel.volume(high)) - np.asarray(vessel.volume(low))
+    mass = filling.mass(high) - filling.mass(low)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        mean = mass / volume
+    return np.where(volume > 0.0, mean, column.density(high))

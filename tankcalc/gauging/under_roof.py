@@ -22,6 +22,28 @@ def in_critical_zone(roof: FloatingRoof, surface_m: FloatArray) -> BoolArray:
     return np.asarray((surface_m > roof.lands_at_m) & (surface_m < roof.floats_at_m))
 
 
+def roof_in_water(model: Model, state: State) -> BoolArray:
+    """Return whether the roof reaches through the product into the free water."""
+    roof, top = model.case.tank.floating_roof, model.case.liquid.water_top_m
+    if roof is None or top is None:
+        return np.zeros(state.surface_m.shape, dtype=bool)
+    volume, product, _ = model.contents(state)
+    afloat = state.surface_m >= roof.floats_at_m
+    water = model.case.tank.vessel.volume_below(
+        np.minimum(state.surface_m, max(top, model.case.tank.vessel.z_min)), state.surface_m
+    )
+    return np.asarray(afloat & ((volume < water) | (product < 0.0)))
+
+
+def roof_sunk(where: BoolArray | None) -> Notice:
+    """Refuse a roof that reaches into the free water: what it displaces is of two liquids."""
+    message = (
+        "There is less product above the free water than the roof displaces: it reaches into the "
+        "water, and how much of each it displaces is not known. Check the water level."
+    )
+    return Notice("roof_in_water", message, "water_level", True, where)
+
+
 def critical_zone(model: Model, where: BoolArray | None, reading: str = "") -> Notice:
     """Refuse volume and mass where legs and liquid share the roof, with bounds for one reading."""
     roof = model.case.tank.floating_roof
@@ -80,4 +102,6 @@ def surface_under_roof(
         middle = 0.5 * (left + right)
         less = held(middle) < amount
         left, right = np.where(less, middle, left), np.where(less, right, middle)
-    return np.where(between, np.nan, 0.5 * (left + right))
+    empty = amount <= held(vessel.z_min)
+    found = np.where(empty, vessel.z_min, 0.5 * (left + right))
+    return np.where(between, np.nan, found)

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import itertools
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -51,6 +53,54 @@ class Stretch:
     head_pa_m: float
     modulus_pa: float
 
+    def gain_below(self, z_m: Array, surface_m: Array) -> Array:
+        """Return what the head of a surface (m) adds to the volume below elevations (m), m3."""
+        volume = np.zeros(np.broadcast_shapes(z_m.shape, surface_m.shape))
+        for course in self.courses:
+            over = np.maximum(surface_m - course.bottom_m, 0.0)
+            past = np.maximum(surface_m - np.clip(z_m, course.bottom_m, course.top_m), 0.0)
+            volume += self._share(course) * (over**2 - past**2)
+        return volume
+
+    def mass_gain(
+        self, density: Callable[[Array], Array], jumps_m: Sequence[float], surface_m: Array
+    ) -> Array:
+        """Return the mass (kg) of what the head adds, where density depends on elevation.
+
+        Parameters
+        ----------
+        density : callable
+            Density at elevations, kg/m3, smooth between the jumps; at a jump, that above it.
+        jumps_m : sequence of float
+            Elevations at which it jumps, m.
+        surface_m : array
+            Surfaces, m.
+
+        Notes
+        -----
+        Integral of rho(z) times the growth of the area, 2 k (surface - z), by Simpson's rule
+        between courses and jumps: exact for a density that is linear there.
+        """
+        mass = np.zeros_like(surface_m)
+        for course in self.courses:
+            inside = (z for z in jumps_m if course.bottom_m < z < course.top_m)
+            edges = [course.bottom_m, *sorted(inside), course.top_m]
+            for low, high in itertools.pairwise(edges):
+                bottom = np.minimum(low, surface_m)
+                top = np.minimum(high, surface_m)
+                third = (top - bottom) / 6.0
+                middle = 0.5 * (bottom + top)
+                under = bottom + (1.0 - 1e-12) * (top - bottom)
+                weighed = density(bottom) * (surface_m - bottom)
+                weighed = weighed + 4.0 * density(middle) * (surface_m - middle)
+                weighed = weighed + density(under) * (surface_m - top)
+                mass += 2.0 * self._share(course) * third * weighed
+        return mass
+
+    def _share(self, course: Course) -> float:
+        share = np.pi * course.radius_m**3 * self.head_pa_m
+        return float(share / (self.modulus_pa * course.thickness_m))
+
     def gain(self, surface_m: Array) -> tuple[Array, Array, Array]:
         """Return what a surface (m) adds: volume (m3), its moment (m4), and area (m2).
 
@@ -59,8 +109,7 @@ class Stretch:
         """
         volume, moment, area = (np.zeros_like(surface_m) for _ in range(3))
         for course in self.courses:
-            share = np.pi * course.radius_m**3 * self.head_pa_m
-            share /= self.modulus_pa * course.thickness_m
+            share = self._share(course)
             over = np.maximum(surface_m - course.bottom_m, 0.0)
             past = np.maximum(surface_m - course.top_m, 0.0)
             volume += share * (over**2 - past**2)
@@ -118,28 +167,48 @@ class LoadedVessel(Vessel):
 
     def _area(self, z: Array) -> Array:
         area = self._area_factor * self._bare.area(self._bare_elevations(z))
-        return area if self._stretch is None else area + self._stretch.gain(z)[2]
+        return area if self.stretch is None else area + self.stretch.gain(z)[2]
 
     def _volume_and_moment(self, z: Array) -> tuple[Array, Array]:
         volume, moment = self._bare.volume_and_moment(self._bare_elevations(z))
         volume = self._area_factor * self._upright * volume
         moment = self._area_factor * self._upright**2 * moment
-        if self._stretch is not None:
-            more, lever, _ = self._stretch.gain(z)
+        if self.stretch is not None:
+            more, lever, _ = self.stretch.gain(z)
             volume, moment = volume + more, moment + lever
         return volume, moment
 
     def _level(self, volume: Array) -> Array:
         level = self._level_without_gain(volume)
-        if self._stretch is None:
+        if self.stretch is None:
             return level
         for _ in range(STEPS):
-            better = self._level_without_gain(volume - self._stretch.gain(level)[0])
+            better = self._level_without_gain(volume - self.stretch.gain(level)[0])
             settled = np.all(np.abs(better - level) <= 1e-14 * (1.0 + np.abs(level)))
             level = better
             if settled:
                 break
         return level
+
+    @property
+    def stretch(self) -> Stretch | None:
+        """What the head of a liquid adds to the volume."""
+        return self._stretch
+
+    @property
+    def unstretched(self) -> Vessel:
+        """The same vessel, grown but without what the head adds."""
+        if self.stretch is None:
+            return self
+        return LoadedVessel(self._bare, self._area_factor**0.5, self._upright)
+
+    def volume_below(self, z: Array, surface: Array) -> Array:
+        """Return the volume below elevations under a surface, m3; as `Vessel.volume_below`."""
+        if self.stretch is None:
+            return super().volume_below(z, surface)
+        held_at = self._inside(z).reshape(np.shape(z))
+        bare = np.asarray(self.unstretched.volume(held_at))
+        return bare + self.stretch.gain_below(held_at, np.asarray(surface))
 
     def _bare_elevations(self, z: Array) -> Array:
         return held(z / self._upright, self._bare.z_min, self._bare.z_max)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from functools import cached_property
-from typing import overload
+from typing import TYPE_CHECKING, overload
 
 import numpy as np
 import numpy.typing as npt
@@ -12,6 +12,9 @@ from tankcalc.geometry.body import Array, Body
 from tankcalc.geometry.compiled import compiled
 from tankcalc.geometry.given import Given, as_given, chunks, flat, held, refuse_outside
 from tankcalc.geometry.inverse import Ladder, ladder, level_of_volume
+
+if TYPE_CHECKING:
+    from tankcalc.geometry.loaded import Stretch
 
 ROUNDING_M = 1e-9
 """How far outside its range an elevation is still taken as the end of the range, m."""
@@ -193,6 +196,33 @@ class Vessel:
             ("A volume", "m3", "what the vessel can hold"),
         )
         return as_given(volume, self._level(held(wanted, *limits)))
+
+    @property
+    def stretch(self) -> Stretch | None:
+        """What the head of a liquid adds to the volume; None where nothing is known of it."""
+        return None
+
+    @property
+    def unstretched(self) -> Vessel:
+        """The same vessel without what the head adds."""
+        return self
+
+    def volume_below(self, z: Array, surface: Array) -> Array:
+        """Return the volume below elevations under a surface.
+
+        Parameters
+        ----------
+        z : ndarray of any shape
+            Elevations inside the vessel, no higher than the surface, m.
+        surface : ndarray that broadcasts with it
+            The surface, m: a shell that stretches under the head is wider below a high one.
+
+        Returns
+        -------
+        ndarray
+            Volume, m3.
+        """
+        return np.broadcast_to(self.volume(z), np.broadcast_shapes(np.shape(z), np.shape(surface)))
 
     def outline(self) -> Array:
         """Return the closed side view, (n, 2): x to the right and elevation above the datum, m."""

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from tankcalc.sums.answer import sums
+from tankcalc.sums.answer import Sums, sums
 from tankcalc.sums.book import ROUNDINGS, Rounding
-from tankcalc.sums.working import Line
+from tankcalc.sums.given import Line
 
-__all__ = ["ROUNDINGS", "Line", "Rounding", "sums"]
+__all__ = ["ROUNDINGS", "Line", "Rounding", "Sums", "sums"]

@@ -82,6 +82,16 @@ class Book:
         return volume * BARREL_M3 if self.barrels else volume
 
     @property
+    def times_unit(self) -> str:
+        """What a volume of the book is multiplied by to be m3, inside a working."""
+        return f" x {BARREL_M3} m3/bbl" if self.barrels else ""
+
+    @property
+    def per_unit(self) -> str:
+        """What m3 are divided by to be a volume of the book, inside a working."""
+        return f" / {BARREL_M3} m3/bbl" if self.barrels else ""
+
+    @property
     def temperature_unit(self) -> str:
         """The unit of temperatures."""
         return "degF" if self.fahrenheit else "degC"

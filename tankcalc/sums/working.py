@@ -8,161 +8,86 @@ working goes on with them; volumes and masses go on unrounded and are rounded on
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-from dataclasses import dataclass
-from typing import TYPE_CHECKING
+from collections.abc import Generator, Iterator
+from dataclasses import replace
 
 from tankcalc.constants import (
     CONVENTIONAL_AIR_DENSITY_KG_M3,
     CONVENTIONAL_WEIGHT_DENSITY_KG_M3,
 )
+from tankcalc.errors import InputError, RangeError
 from tankcalc.gauging.roof import roof_adjustment_m3
 from tankcalc.gauging.shell import linear_growth, shell_temperature_k
 from tankcalc.sums.book import Book
+from tankcalc.sums.given import FactorGiven, Given, HeadGiven, Line, RoofGiven, ShellGiven
 from tankcalc.units import to_unit
-
-if TYPE_CHECKING:
-    from tankcalc.fluids.models import DensityModel
-
-
-@dataclass(frozen=True, slots=True)
-class Line:
-    """One line of the working.
-
-    Attributes
-    ----------
-    symbol, name : str
-        As the trade writes it, and in words.
-    value : float
-        In ``unit``.
-    places : int
-        Decimals to show.
-    unit : str
-        Empty for a factor.
-    working : str
-        What it is made of, in the figures of the lines before it.
-    """
-
-    symbol: str
-    name: str
-    value: float
-    places: int
-    unit: str
-    working: str
-
-
-@dataclass(frozen=True, slots=True)
-class ShellGiven:
-    """What the shell's factor is made of; temperatures in K."""
-
-    liquid_k: float
-    air_k: float | None
-    insulated: bool
-    expansion_per_k: float
-    calibrated_k: float
-    solid: bool = False
-
-
-@dataclass(frozen=True, slots=True)
-class RoofGiven:
-    """A roof afloat: its mass (kg), the liquid that it floats in, what the table allows for."""
-
-    mass_kg: float
-    density_kg_m3: float
-    included_at_kg_m3: float | None
-
-
-@dataclass(frozen=True, slots=True)
-class FactorGiven:
-    """What the factor to the standard volume is made of.
-
-    Attributes
-    ----------
-    value : float
-        Unrounded, without the pressure's part.
-    source : str
-        Whose it is.
-    model : DensityModel or None
-        Gives the factor from the rounded temperature and density; None where it is no function of
-        one temperature: an integral over several, a mixture, the user's own.
-    liquid_k, base_k : float or None
-        Temperature of the liquid and of the standard volume, K.
-    pressure : float
-        Factor for the liquid's compression (CPL).
-    """
-
-    value: float
-    source: str
-    model: DensityModel | None = None
-    liquid_k: float | None = None
-    base_k: float | None = None
-    pressure: float = 1.0
-
-
-@dataclass(frozen=True, slots=True)
-class Given:
-    """Where the working begins: SI, and None where a line has nothing to say.
-
-    Attributes
-    ----------
-    level_m, total_m3 : float
-        The level, and what the table holds below it.
-    water_m3 : float
-        Of it free water.
-    stretch_m3 : float
-        What the head adds to the volume of the product.
-    density_kg_m3 : float
-        Mean density of the product in the tank.
-    reference_kg_m3 : float or None
-        At the base temperature.
-    sediment_water : float or None
-        As a fraction of the standard volume.
-    from_pressure : bool
-        Whether the mass is primary: the standard volume is then mass over reference density.
-    """
-
-    level_m: float
-    total_m3: float
-    water_m3: float
-    stretch_m3: float
-    shell: ShellGiven | None
-    roof: RoofGiven | None
-    factor: FactorGiven | None
-    density_kg_m3: float
-    reference_kg_m3: float | None
-    sediment_water: float | None
-    from_pressure: bool
 
 
 def working(given: Given, book: Book) -> tuple[Line, ...]:
-    """Return the lines from the table's volume down to the weight in air."""
+    """Return the lines from the reading or the table's volume down to the weight in air."""
     return tuple(_lines(given, book))
 
 
 def _lines(given: Given, book: Book) -> Iterator[Line]:
-    """Yield the lines; volumes go on with all their digits and are rounded only to be printed."""
+    if given.head is not None:
+        yield from _head(given.head, given.level_m, book)
+    # A mass that the pressure gives is not to carry the rounding of the shell's factor.
+    shell_book = book if given.head is None else replace(book, rounding="unrounded")
+    observed = yield from _observed(given, book, shell_book)
+    if given.head is not None or given.factor is None:
+        mass = yield from _gross_mass(given, book, observed)
+        if given.factor is None:
+            yield from _weight(given, book, mass, given.density_kg_m3, "GM")
+        elif given.factor.own:
+            yield from _by_factor(given, book, observed, given.factor)
+        else:
+            yield from _by_mass(given, book, mass, given.factor)
+    else:
+        yield from _by_factor(given, book, observed, given.factor)
+
+
+def _head(head: HeadGiven, level_m: float, book: Book) -> Iterator[Line]:
+    """Yield the lines from the pressure to the level."""
+    kilopascal, areal = head.head_pa / 1000.0, head.head_pa / head.gravity_m_s2
+    made_of = (
+        f"at {head.tag}'s tap, less the pressure on the surface; {head.tag} reads "
+        f"{head.reading_pa / 1000.0:.3f} kPa, air, vapour and legs taken off"
+    )
+    yield Line("dP", "head of the liquid", kilopascal, 4, "kPa", made_of)
+    made_of = f"dP x 1000 / {head.gravity_m_s2:.5f} m/s2"
+    yield Line("MA", "mass over an area", areal, 3, "kg/m2", made_of)
+    if level_m > head.tap_m:
+        mean = areal / (level_m - head.tap_m)
+        made_of = f"{head.tap_m:.3f} m (tap) + MA / {mean:.4f} kg/m3, mean above the tap"
+        yield Line("L", "level", level_m, 4, "m", made_of)
+
+
+def _observed(given: Given, book: Book, shell_book: Book) -> Generator[Line, None, float]:
+    """Yield the lines to the gross observed volume, and return it.
+
+    Volumes go on with all their digits and are rounded only to be printed.
+    """
     total = book.kept(book.volume(given.total_m3), book.volume_places)
-    yield _volume(book, "TOV", "total observed volume", total, f"table at {given.level_m:.3f} m")
+    yield _volume(book, "TOV", "total observed volume", total, given.total_of)
     observed, terms = total, "TOV"
     if given.water_m3:
         water = book.kept(book.volume(given.water_m3), book.volume_places)
-        yield _volume(book, "FW", "free water", water, "table at the water's level")
+        yield _volume(book, "FW", "free water", water, f"table at {given.water_level_m:.3f} m")
         observed, terms = total - water, "(TOV - FW)"
     if given.shell is not None:
-        shell = list(_shell_lines(given.shell, book))
+        shell = list(_shell_lines(given.shell, shell_book))
         yield from shell
         observed, terms = observed * shell[-1].value, f"{terms} x CTSh"
     if given.stretch_m3:
         gain = book.volume(given.stretch_m3)
-        made_of = "2 pi R^3 rho g depth / (E t) over the head, every course"
-        yield _volume(book, "STR", "stretch of the shell", gain, made_of)
+        yield _volume(book, "STR", "stretch of the shell", gain, given.stretch_of)
         observed, terms = observed + gain, f"{terms} + STR"
     if given.roof is not None:
-        added, made_of = _roof(given.roof, book)
-        yield _volume(book, "FRA", "roof", added, made_of)
+        added, made_of = _roof(given.roof, shell_book)
+        yield _volume(book, "FRA", "floating-roof adjustment", added, made_of)
         observed, terms = observed + added, f"{terms} + FRA"
     yield _volume(book, "GOV", "gross observed volume", observed, terms)
-    yield from (_by_mass if given.from_pressure else _by_factor)(given, book, observed)
+    return observed
 
 
 def _volume(book: Book, symbol: str, name: str, value: float, made_of: str) -> Line:
@@ -206,14 +131,24 @@ def _roof(roof: RoofGiven, book: Book) -> tuple[float, str]:
     made_of = f"-{roof.mass_kg:g} kg / {book.show(rho, 1)} kg/m3"
     if roof.included_at_kg_m3 is not None:
         made_of = f"{roof.mass_kg:g} kg x (1/{roof.included_at_kg_m3:g} - 1/{book.show(rho, 1)})"
-    return book.volume(added), made_of
+    return book.volume(added), made_of + book.per_unit
 
 
-def _by_factor(given: Given, book: Book, observed: float) -> Iterator[Line]:
+def _gross_mass(given: Given, book: Book, observed: float) -> Generator[Line, None, float]:
+    """Yield the product's mass by its mean density, and return it (t).
+
+    The density is not rounded: from a pressure it is what the readings and the profile give.
+    """
+    rho = given.density_kg_m3
+    yield Line("RHO", "mean density in the tank", rho, 4, "kg/m3", given.density_of)
+    mass = book.cubic_metres(observed) * rho / 1000.0
+    yield _tonnes(book, "GM", "gross mass", mass, f"GOV{book.times_unit} x RHO / 1000")
+    return mass
+
+
+def _by_factor(given: Given, book: Book, observed: float, factor: FactorGiven) -> Iterator[Line]:
     """Yield the lines from the volume: factor, standard and net volume, then mass and weight."""
-    if given.factor is None:
-        return
-    factors = list(_factor_lines(given, given.factor, book))
+    factors = list(_factor_lines(given, factor, book))
     yield from factors
     standard = observed
     for line in factors:
@@ -221,44 +156,58 @@ def _by_factor(given: Given, book: Book, observed: float) -> Iterator[Line]:
     yield from _net(given, book, standard, " x ".join(["GOV", *(line.symbol for line in factors)]))
 
 
-def _by_mass(given: Given, book: Book, observed: float) -> Iterator[Line]:
+def _by_mass(given: Given, book: Book, mass: float, factor: FactorGiven) -> Iterator[Line]:
     """Yield the lines from the mass that the pressure measures: the volumes follow from it."""
-    mass = book.cubic_metres(observed) * given.density_kg_m3 / 1000.0
-    # Not rounded: the mean density is what the readings and the profile give.
-    made_of = f"GOV x {given.density_kg_m3:.4f} kg/m3, mean by the pressure"
-    yield _tonnes(book, "m", "mass of the product", mass, made_of)
-    if given.reference_kg_m3 is None:
-        return
+    assert given.reference_kg_m3 is not None
     reference = book.kept(given.reference_kg_m3, 1)
+    shown = book.show(reference, 1)
+    made_of = f"RHO / {shown}, not used here: {_source(given, factor, book)}"
+    yield _factor(book, "CTL", "factor of temperature", factor.value * factor.pressure, made_of)
     standard = book.volume(mass * 1000.0 / reference)
-    yield from _net(given, book, standard, f"m / {book.show(reference, 1)} kg/m3")
+    yield from _net(given, book, standard, f"GM x 1000 / {shown} kg/m3{book.per_unit}")
 
 
 def _factor_lines(given: Given, factor: FactorGiven, book: Book) -> Iterator[Line]:
-    value, made_of = factor.value, factor.source
-    if factor.model is not None and factor.liquid_k is not None and factor.base_k is not None:
+    value = factor.value
+    if book.rounding == "as printed" and factor.model is not None:
         assert given.reference_kg_m3 is not None
+        assert factor.liquid_k is not None
+        assert factor.base_k is not None
         reference = book.kept(given.reference_kg_m3, 1)
-        number = book.temperature(factor.liquid_k)
-        if book.rounding == "as printed":
-            value = _factor_of(factor.model, reference, book.kelvin(number), factor.base_k)
-        unit = book.temperature_unit
-        base = to_unit(factor.base_k, unit, "temperature")
-        made_of = (
-            f"{factor.source}; {book.show(reference, 1)} kg/m3 at {base:g} {unit}, "
-            f"{book.show(number, 1)} {unit}"
-        )
-    yield _factor(book, "CTL", "factor of temperature", value, made_of)
+        kelvin = book.kelvin(book.temperature(factor.liquid_k))
+        value = _factor_of(factor, reference, kelvin)
+    yield _factor(book, "CTL", "factor of temperature", value, _source(given, factor, book))
     if factor.pressure != 1.0:
-        yield _factor(book, "CPL", "factor of pressure", factor.pressure, factor.source)
+        made_of = f"{factor.source}; {factor.gauge_pa / 1000.0:.3f} kPa gauge"
+        yield _factor(book, "CPL", "factor of pressure", factor.pressure, made_of)
 
 
-def _factor_of(model: DensityModel, reference: float, kelvin: float, base_k: float) -> float:
-    """Return the factor of the liquid of a (rounded) reference density at a temperature."""
+def _source(given: Given, factor: FactorGiven, book: Book) -> str:
+    """Return whose factor it is, and the figures that go into it."""
+    if factor.own or given.reference_kg_m3 is None or factor.base_k is None:
+        return factor.source
+    reference = book.show(book.kept(given.reference_kg_m3, 1), 1)
+    unit = book.temperature_unit
+    base = to_unit(factor.base_k, unit, "temperature")
+    made_of = f"{factor.source}; {reference} kg/m3 at {round(base, 2):g} {unit}"
+    if factor.liquid_k is None:
+        return f"{made_of}, mean {given.density_kg_m3:.4f} kg/m3 in the tank"
+    return f"{made_of}, liquid at {book.show(book.temperature(factor.liquid_k), 1)} {unit}"
+
+
+def _factor_of(factor: FactorGiven, reference: float, kelvin: float) -> float:
+    """Return the factor of a rounded reference density at a rounded temperature.
+
+    Where rounding alone puts one of them outside the model's limits, the unrounded factor.
+    """
     import numpy as np
 
-    liquid = model.of_reference(reference)
-    at, base = liquid.checked_density(np.array([kelvin, base_k]))
+    assert factor.model is not None
+    try:
+        liquid = factor.model.of_reference(reference)
+        at, base = liquid.checked_density(np.array([kelvin, factor.base_k]))
+    except (InputError, RangeError):
+        return factor.value
     return float(at / base)
 
 
@@ -277,8 +226,16 @@ def _net(given: Given, book: Book, standard: float, made_of: str) -> Iterator[Li
         return
     reference = book.kept(given.reference_kg_m3, 1)
     mass, shown = book.cubic_metres(net) * reference / 1000.0, book.show(reference, 1)
-    yield _tonnes(book, "M", "mass in vacuum", mass, f"{symbol} x {shown} kg/m3")
+    made_of = f"{symbol}{book.times_unit} x {shown} kg/m3 / 1000"
+    yield _tonnes(book, "M", "mass in vacuum", mass, made_of)
+    yield from _weight(given, book, mass, reference, "M")
+
+
+def _weight(
+    given: Given, book: Book, mass: float, density_kg_m3: float, symbol: str
+) -> Iterator[Line]:
     air, steel = CONVENTIONAL_AIR_DENSITY_KG_M3, CONVENTIONAL_WEIGHT_DENSITY_KG_M3
-    weight = mass * (1.0 - air / reference) / (1.0 - air / steel)
-    made_of = f"M x (1 - {air:g}/{shown}) / (1 - {air:g}/{steel:g})"
+    weight = mass * (1.0 - air / density_kg_m3) / (1.0 - air / steel)
+    shown = book.show(density_kg_m3, 1) if given.factor is not None else "RHO"
+    made_of = f"{symbol} x (1 - {air:g}/{shown}) / (1 - {air:g}/{steel:g})"
     yield _tonnes(book, "W", "apparent weight in air", weight, made_of)
