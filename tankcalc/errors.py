@@ -82,6 +82,20 @@ class GeometryError(TankcalcError, ValueError):
         return f"{self.key}: {self.why}" if self.key else self.why
 
 
+class FigureError(InputError):
+    """One figure of a density model is at fault.
+
+    Attributes
+    ----------
+    key : str
+        The figure, named as in a fluid file ("reference").
+    """
+
+    def __init__(self, key: str, why: str) -> None:
+        super().__init__(why)
+        self.key = key
+
+
 class RangeError(TankcalcError, ValueError):
     """An elevation or a volume lies outside what the vessel can hold."""
 

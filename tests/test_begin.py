@@ -140,11 +140,30 @@ def test_the_keys_shown_in_comments_are_sound(tmp_path: Path) -> None:
 def test_the_models_shown_in_comments_are_sound(tmp_path: Path) -> None:
     begin(tmp_path)
     shown = (tmp_path / "fluids" / "gas-oil.toml").read_text().replace("\n# ", "\n")
-    models = re.findall(r'(?m)^model = "(?:constant|table|samples)".*\n(?:[a-z]+ = .*\n)+', shown)
-    assert len(models) == 3
+    models = re.findall(r"(?m)^model = .*\n(?:[a-z_.]+ = .*\n)+", shown.partition("instead")[2])
+    assert len(models) == 11
     for number, model in enumerate(models):
         (tmp_path / "fluids" / f"model-{number}.toml").write_text(f"[density]\n{model}")
     assert vet(None, tmp_path) == []
+
+
+def test_every_model_and_key_of_a_fluid_is_in_the_starter() -> None:
+    from tankcalc.fluids.petroleum import BASE_NAMES, EDITIONS, GROUPS
+    from tankcalc.profiles.density_schema import DENSITY, GRID
+    from tankcalc.profiles.fluid_schema import FLUID
+    from tankcalc.profiles.vapour_schema import VAPOUR
+
+    text = (STARTER / "fluids" / "gas-oil.toml").read_text()
+    for kind, table in DENSITY.tables.items():
+        parts = re.findall(rf'(?m)^#? ?model = "{kind}".*\n(?:#? .*\n|[a-z#].*\n)*', text)
+        block = "".join(part.partition("\n#\n")[0] for part in parts)
+        assert block, kind
+        for key in table.keys.keys() - {"uncertainty"}:  # type: ignore[attr-defined]
+            assert re.search(rf"\b{key}\b", block), (kind, key)
+    for word in (*GROUPS, *BASE_NAMES.values(), *map(str, EDITIONS), "uncertainty"):
+        assert word in text
+    for key in (*FLUID.keys, *VAPOUR.keys, *GRID.keys):
+        assert re.search(rf"\b{key}\b", text), key
 
 
 def test_every_key_of_a_tank_is_in_the_starter() -> None:
@@ -155,8 +174,8 @@ def test_every_key_of_a_tank_is_in_the_starter() -> None:
 
     text = (STARTER / "tanks" / "T-1.toml").read_text()
     keys = {*TANK.keys, *TRANSMITTERS.keys, *FLOATING_ROOF.keys, *SHELL.keys, *CERTIFICATE.keys}
-    # A table's own allowances matter only where a strapping table already makes them.
-    for key in keys - {"table_density", "included_at", "vapour"}:
+    # The vapour is shown beside the fluid it belongs to.
+    for key in keys - {"vapour"}:
         assert re.search(rf"\b{key}\b", text), key
     for kind in SHAPES:
         assert f'"{kind}"' in text

@@ -16,6 +16,7 @@ from tankcalc.fluids.liquefied_gas import LiquefiedGas
 from tankcalc.fluids.petroleum import GROUPS, Petroleum
 from tankcalc.fluids.saturated import Saturated
 from tankcalc.fluids.solution import Grid, Solution
+from tankcalc.fluids.vapour import Vapour
 from tankcalc.fluids.water import Water
 from tankcalc.profiles import Site, load_site
 from tankcalc.profiles.where import demo_folder
@@ -24,7 +25,7 @@ GRID = """\
 model = "solution"
 concentration = "15 %"
 grid_source = "Supplier's data sheet"
-grid_date = "2026-03"
+grid_date = "2026-03-01"
 
 [density.grid]
 concentrations = [0.1, "20 %"]
@@ -102,9 +103,9 @@ def test_every_group_of_petroleum_can_be_named(site: Site) -> None:
             "6: density.edition: 1995 is no edition known here. Choose 2004 or 1980.",
         ),
         ('edition = "2004"', '"2004" is no edition known here'),
-        ('group = "special"', "density: "),
-        ('at = "17 degC"', "density: "),
-        ('reference = "1845 kg/m3"', "density: "),
+        ('group = "special"', "density.group: a special liquid needs"),
+        ('at = "17 degC"', "density.at: "),
+        ('reference = "1845 kg/m3"', "density.reference: 1845 kg/m3 at 15 degC is outside"),
         ('expansion = "-9e-4 / K"', "must be above zero"),
     ],
 )
@@ -122,13 +123,13 @@ def test_petroleum_that_is_none_is_refused(site: Site, line: str, said: str) -> 
 def test_a_grid_keeps_whose_figures_it_holds(site: Site) -> None:
     model = read(site, GRID)
     assert isinstance(model, Solution)
-    assert model.source == "Supplier's data sheet, 2026-03"
+    assert model.source == "Supplier's data sheet, 2026-03-01"
     assert model.grid == Grid(
         (0.1, 0.2),
         (273.15, 293.15, 313.15),
         ((1075.0, 1070.0, 1062.0), (1156.0, 1148.0, 1138.0)),
         "Supplier's data sheet",
-        "2026-03",
+        "2026-03-01",
     )
     assert model.checked_density(np.array(293.15)) == pytest.approx(1109.0)
 
@@ -142,7 +143,8 @@ def test_a_grid_keeps_whose_figures_it_holds(site: Site) -> None:
         (('0.1, "20 %"]', '0.1, "20 %", "30 %"]'), "density.grid.densities: 2 rows of dens"),
         (('"1138 kg/m3"', "1138"), "density.grid.densities.2.3: 1138 is a bare number."),
         (('"15 %"', '"25 %"'), "density: a concentration of 25 % is outside the grid's, 10 to"),
-        (('grid_date = "2026-03"\n', ""), "density.grid_date: missing."),
+        (('grid_date = "2026-03-01"\n', ""), "density.grid_date: missing."),
+        (('"2026-03-01"', '"March"'), 'density.grid_date: "March" is no date.'),
         (("concentrations =", "concentration ="), "density.grid.concentration: unknown key."),
     ],
 )
@@ -201,6 +203,19 @@ def test_the_composition_chooses_the_method(site: Site) -> None:
 def test_a_composition_that_cannot_be_used_is_told(site: Site, text: str, said: str) -> None:
     (problem,) = refused(site, text)
     assert problem.startswith(said)
+
+
+def test_a_saturated_gas_brings_its_own_vapour_unless_the_file_states_one(site: Site) -> None:
+    path = site.folder / "fluids" / "x.toml"
+    text = f"[density]\n{composition('propane = 1')}"
+    path.write_text(text)
+    vapour = site.fluid("x").vapour
+    assert vapour is not None
+    assert vapour.molar_mass_kg_mol == pytest.approx(44.0956e-3, rel=1e-5)
+    path.write_text(text + '\n[vapour]\ndensity = "9 kg/m3"\n')
+    assert site.fluid("x").vapour == Vapour(9.0)
+    path.write_text(f"[density]\n{composition('methane = 1')}")
+    assert site.fluid("x").vapour is None, "the method for natural gas knows none"
 
 
 def test_constituents_take_mass_fractions(site: Site) -> None:

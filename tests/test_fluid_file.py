@@ -13,7 +13,9 @@ from sites import make_site
 
 from tankcalc.errors import InputError, ProfileError, TankcalcError
 from tankcalc.profiles import Site, load_site
-from tankcalc.profiles.fluid_file import Origin, Saved, fluid_text, save_fluid
+from tankcalc.profiles.fluid_file import Origin, Saved, save_fluid
+from tankcalc.profiles.fluid_toml import fluid_text
+from tankcalc.profiles.fluid_users import users_of
 
 BRINE = """\
 # Spot samples, bottom first.
@@ -81,8 +83,21 @@ def test_another_model_keeps_the_comments_and_the_other_tables() -> None:
     text = fluid_text("Brine", HEAVIER, BRINE.encode())
     held = tomllib.loads(text)
     assert held == {"name": "Brine", "density": HEAVIER, "vapour": {"density": "1.2 kg/m3"}}
-    for comment in ("# Spot samples", "# sample again after a receipt", "# nitrogen"):
-        assert comment in text
+    assert "# Spot samples" in text
+    assert "# nitrogen" in text
+    assert "# sample again after a receipt" not in text, "it was about the model"
+
+
+def test_comments_beside_figures_stay_where_the_model_does() -> None:
+    old = b'[density]\nmodel = "constant"  # weighed\nvalue = "850 kg/m3"  # mud balance\n'
+    text = fluid_text("", HEAVIER, old)
+    assert text == old.decode().replace("850", "900")
+
+
+def test_a_date_without_quotes_stays_as_it_is() -> None:
+    old = '[density]\nmodel = "solution"\ngrid_date = 2026-03-01  # of the sheet\n'
+    density = {"model": "solution", "grid_date": "2026-03-01"}
+    assert fluid_text("", density, old.encode()) == old
 
 
 @pytest.mark.parametrize(
@@ -126,7 +141,7 @@ def test_the_old_file_is_kept_under_a_name_of_its_own_each_time(site: Site) -> N
         assert saved.kept.read_bytes() == origin.held
     kept = files(site)
     assert kept.keys() == {"oil.toml", "oil.toml.old", "oil.toml.old2", "oil.toml.old3"}
-    assert [kept[f"oil.toml.old{n}"] for n in ("", 2, 3)] == held
+    assert [kept[f"oil.toml.old{n}"] for n in (3, 2, "")] == held, "the newest has no number"
     assert site.fluid_names() == ["oil"], "what is kept is no fluid"
 
 
@@ -142,8 +157,43 @@ def test_a_copy_under_another_name_leaves_the_first_alone(site: Site) -> None:
     before = files(site)
     saved = save_fluid(site, "brine-2", "Brine 2", HEAVIER, origin_of(site, "brine"))
     assert saved.kept is None
-    assert "# nitrogen" in saved.path.read_text()
+    text = saved.path.read_text()
+    assert "#" not in text, "comments are about the other liquid"
+    assert tomllib.loads(text)["vapour"] == {"density": "1.2 kg/m3"}
     assert {**before, "brine-2.toml": saved.path.read_bytes()} == files(site)
+
+
+def test_a_new_file_takes_a_name_made_of_its_own(site: Site) -> None:
+    saved = save_fluid(site, "my-gasoline", "", HEAVIER, origin_of(site, "oil"))
+    assert tomllib.loads(saved.path.read_text())["name"] == "My gasoline"
+
+
+def test_older_files_keep_their_numbers_where_the_disk_fails(
+    site: Site, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    save_fluid(site, "oil", "Oil", HEAVIER, origin_of(site, "oil"))
+    before = files(site)
+
+    def full(_from: Path, _to: Path) -> Path:
+        raise OSError(errno.ENOSPC, "no space")
+
+    monkeypatch.setattr(Path, "replace", full)
+    lighter = {"model": "constant", "value": "800 kg/m3"}
+    with pytest.raises(TankcalcError, match="the disk is full"):
+        save_fluid(site, "oil", "Oil", lighter, origin_of(site, "oil"))
+    assert files(site) == before
+
+
+def test_who_uses_a_fluid_is_found(site: Site) -> None:
+    layers = '[[layer]]\nfluid = "water"\ntop = "1 m"\n\n[[layer]]\nfluid = "oil"\n'
+    (site.folder / "fluids" / "both.toml").write_text(layers)
+    tank = site.folder / "tanks" / "V-1.toml"
+    other = tank.read_text().replace('contents = "oil"', 'contents = "both"')
+    tank.with_name("V-2.toml").write_text(other)
+    tank.with_name("V-3.toml").write_text("no TOML")
+    assert users_of(site, "oil") == (("V-1", "V-2"), ("both",))
+    assert users_of(site, "both") == (("V-2",), ())
+    assert users_of(site, "brine") == ((), ())
 
 
 def test_permissions_of_the_file_stay(site: Site) -> None:

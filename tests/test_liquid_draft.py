@@ -12,11 +12,14 @@ from sites import make_site
 from tanks import upright
 
 from tankcalc.profiles import load_site
+from tankcalc.profiles.fluid_file import Origin
+from tankcalc.profiles.fluid_users import Users
 from tankcalc.profiles.leaves import choice, flag, fraction, listed, number, pair, quantity, text
 from tankcalc.profiles.tables import ByKind, Named, Table, need
 from tankcalc.tui.chart import ASCII, UNICODE, Axis, Plot, chart, nice_axis
 from tankcalc.tui.liquid_curves import over_elevation, over_temperature, shown_of
 from tankcalc.tui.liquid_draft import LiquidDraft, id_of, keys_of, models, opened
+from tankcalc.tui.liquid_present import to_save
 from tankcalc.tui.liquid_text import meant, problems_with, shown, takes
 from tankcalc.tui.liquid_trial import tried
 
@@ -89,6 +92,57 @@ def test_nothing_that_is_typed_is_an_error_of_the_program(data: st.DataObject) -
     for plot in (result.over_temperature, result.over_elevation):
         if isinstance(plot, Plot):
             assert words(plot, 36, 9)
+
+
+def test_a_model_with_nothing_typed_has_nothing_wrong() -> None:
+    for model in models():
+        draft = LiquidDraft(model=model)
+        assert tried(draft, upright()).problems == {}, model
+
+
+def test_a_composition_typed_wrongly_is_told_how_it_is_typed() -> None:
+    draft = LiquidDraft(model="liquefied gas")
+    draft.type("key-composition", "propane")
+    said = tried(draft, upright()).problems["key-composition"]
+    assert "such as methane: 0.92, ethane: 0.08" in said
+    assert "{" not in said
+
+
+def begun(name: str) -> LiquidDraft:
+    old = b'name = "Oil"\n[density]\nmodel = "constant"\nvalue = "850 kg/m3"\n'
+    draft = LiquidDraft("constant", name=name, stem="oil", origin=Origin("oil", old))
+    draft.type("key-value", "850 kg/m3")
+    draft.began = draft._state()
+    return draft
+
+
+def test_a_new_file_is_shown_by_the_name_typed_or_one_made_of_its_own() -> None:
+    draft = begun("Oil")
+    assert draft.shown_name == "Oil"
+    draft.type("own-file", "my-gasoline")
+    assert draft.shown_name == "My gasoline", "another's name does not go along"
+    draft.type("own-name", "Naphtha")
+    assert draft.shown_name == "Naphtha"
+    draft.type("own-name", "")
+    assert draft.shown_name == "My gasoline"
+
+
+def asked(draft: LiquidDraft, users: Users) -> str:
+    return "\n".join(span for line in to_save(draft, users, 78) for span, _ in line)
+
+
+def test_writing_over_a_file_tells_what_changes_and_for_whom() -> None:
+    draft = begun("Oil")
+    draft.model = "water"
+    said = asked(draft, Users(tuple(f"T-{n}" for n in range(101, 107)), ("both",)))
+    assert "! ANOTHER MODEL: constant -> water" in said
+    assert "value: 850 kg/m3 -> none" in said
+    assert "Calculated with it from then on: T-101, T-102, T-103 and 3 more." in said
+    assert "A layer of: both." in said
+    draft.type("own-file", "rain")
+    said = asked(draft, Users())
+    assert said.startswith('fluids/rain.toml is a new file, shown as "Rain".')
+    assert "->" not in said
 
 
 POINTS = listed(pair(quantity("length"), quantity("density", "positive")))

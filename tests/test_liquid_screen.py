@@ -28,12 +28,12 @@ def _no_delay(monkeypatch: pytest.MonkeyPatch) -> None:
 def test_a_liquid_is_tried_at_a_temperature_and_drawn(tmp_path: Path) -> None:
     async def story(console: Console) -> None:
         await type_expansion(console)
-        await go(console, "TRY AT")
+        await go(console, "try at")
         await console.type("32.5 degC")
         # 845 / (1 + 8.3e-4 x 17.5), by hand; and its slope there.
         await console.wait("832.90 kg/m3")
         assert "-0.0818 % per K" in console.text
-        assert "base, 15.0 degC" in console.text
+        assert "base, 15 degC" in console.text
         assert "-135.0 to 165.0 degC" in console.text
         assert "DENSITY BY TEMPERATURE  kg/m3 / degC" in console.text
         assert "DENSITY BY ELEVATION       m / kg/m3" in console.text
@@ -43,7 +43,7 @@ def test_a_liquid_is_tried_at_a_temperature_and_drawn(tmp_path: Path) -> None:
         rows = console.text.splitlines()
         assert len(rows) == 24
         assert "F5 save" in rows[23]
-        assert "Esc back" in rows[23]
+        assert "Esc leaves field" in rows[23]
 
     play(story, tmp_path)
 
@@ -51,7 +51,7 @@ def test_a_liquid_is_tried_at_a_temperature_and_drawn(tmp_path: Path) -> None:
 def test_temperatures_at_elevations_give_a_density_at_each(tmp_path: Path) -> None:
     async def story(console: Console) -> None:
         await type_expansion(console)
-        await go(console, "TRY AT")
+        await go(console, "try at")
         await console.type("1 m: 15 degC, 5 m: 32.5 degC")
         await console.wait("5.00 m 32.5 degC")
         assert "845.00 kg/m3" in console.row("1.00 m 15.0 degC")
@@ -102,7 +102,7 @@ def test_a_temperature_outside_the_limits_is_told_and_the_curve_stays_inside(
         await open_it(console)
         await console.press("f8", "right", "right", "right")
         await console.wait("< water >")
-        await go(console, "TRY AT")
+        await go(console, "try at")
         await console.type("140 degC")
         await console.wait("140.00 degC is outside what the water density covers")
         assert "0.0 to 100.0 degC" in console.text
@@ -114,17 +114,19 @@ def test_a_temperature_outside_the_limits_is_told_and_the_curve_stays_inside(
 def test_esc_asks_only_where_something_would_be_lost(tmp_path: Path) -> None:
     async def story(console: Console) -> None:
         await open_it(console)
-        await go(console, "TRY AT")
+        await go(console, "try at")
         await console.type("18 degC")
+        await console.press("escape")
+        await console.wait(">model")
         await console.press("escape")
         await console.wait("READINGS")
         await empty(console)
         await console.type("8")
-        await console.press("escape")
+        await console.press("escape", "escape")
         await console.wait("LEAVE WITHOUT SAVING?")
         await console.press("escape")
         await console.gone("LEAVE WITHOUT SAVING?")
-        assert ">reference     X 8" in console.text
+        assert " reference     X 8" in console.text
         await console.press("escape")
         await console.wait("LEAVE WITHOUT SAVING?")
         await console.press("enter")
@@ -165,7 +167,7 @@ def test_letters_act_on_the_row_of_the_model_and_units_change_everything(tmp_pat
         await console.wait("53.064 lb/ft3")
         assert "ft / lb/ft3" in console.text
         await console.press("s")
-        await console.wait("SAVE THIS LIQUID?")
+        await console.wait("WRITE OVER IT?")
         await console.press("escape", "escape")
         await console.wait("READINGS")
         await console.wait(lambda text: " US " in text.splitlines()[0])
@@ -240,3 +242,27 @@ def test_a_defect_is_told_and_nothing_older_is_shown(
 
     play(story, tmp_path)
     assert "the story's own" in (tmp_path / "state" / "defects.txt").read_text()
+
+
+def test_a_field_that_holds_more_than_is_seen_is_marked(tmp_path: Path) -> None:
+    async def story(console: Console) -> None:
+        await open_it(console)
+        await console.press("f8", "right", "right", "down")
+        await console.wait(">points")
+        await console.type("0 degC: 1004 kg/m3, 20 degC: 998 kg/m3")
+        await console.wait(">points         ~")
+
+    play(story, tmp_path)
+
+
+def test_the_full_answer_turns_to_other_units_where_it_stands(tmp_path: Path) -> None:
+    async def story(console: Console) -> None:
+        await console.type("50 kPa")
+        await console.wait("6.505 m")
+        await console.press("f9")
+        await console.wait("F3 units")
+        await console.press("f3")
+        await console.wait("US gal")
+        assert "IN FULL" in console.text
+
+    play(story, tmp_path)

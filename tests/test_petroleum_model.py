@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from dataclasses import replace
 from typing import Any
 
@@ -11,7 +12,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from tankcalc.errors import InputError, RangeError
+from tankcalc.errors import FigureError, InputError, RangeError
 from tankcalc.fluids import petroleum_1984
 from tankcalc.fluids.petroleum import BASES_K, GROUPS, REFINED_GROUPS, Petroleum
 from tankcalc.fluids.petroleum_2004 import factors_from_60
@@ -181,15 +182,33 @@ def test_the_compressibility_of_1984_asks_nothing_of_a_liquid_not_pressed() -> N
 def test_a_density_of_another_group_is_refused_and_the_group_named(
     group: str, density: float, covers: str, edition: int
 ) -> None:
-    with pytest.raises(InputError, match=rf'{group} in the {edition} .* The group "{covers}"'):
+    with pytest.raises(InputError, match=rf'the {edition} .*"{group}", .* The group "{covers}"'):
         Petroleum(group, density, ICE + 15.0, edition)
 
 
 @pytest.mark.parametrize("edition", [2004, 1980])
 @pytest.mark.parametrize("group", ["crude", "lubricating oil", *REFINED_GROUPS])
 def test_a_density_of_no_group_is_refused_with_the_limits(group: str, edition: int) -> None:
-    with pytest.raises(InputError, match=r"1300 kg/m3 at .* \([0-9.]+ to [0-9.]+ kg/m3\)\.$"):
+    with pytest.raises(
+        InputError, match=r"1300 kg/m3 at 20 degC .*, [0-9.]+ to [0-9.]+ kg/m3 at 20 degC\.$"
+    ):
         Petroleum(group, 1300.0, ICE + 20.0, edition)
+
+
+@pytest.mark.parametrize("edition", [2004, 1980])
+@pytest.mark.parametrize("at_k", BASES_K)
+@pytest.mark.parametrize("group", ["crude", "lubricating oil", *REFINED_GROUPS])
+def test_the_limits_told_are_the_limits_that_hold(group: str, at_k: float, edition: int) -> None:
+    with pytest.raises(FigureError) as refused:
+        Petroleum(group, 1300.0, at_k, edition)
+    assert refused.value.key == "reference"
+    found = re.search(r", ([0-9.]+) to ([0-9.]+) kg/m3 at", str(refused.value))
+    assert found is not None
+    low, high = map(float, found.groups())
+    for inside, outside in ((low + 0.02, low - 0.02), (high - 0.02, high + 0.02)):
+        Petroleum(group, inside, at_k, edition)
+        with pytest.raises(FigureError):
+            Petroleum(group, outside, at_k, edition)
 
 
 @pytest.mark.parametrize(

@@ -24,7 +24,7 @@ from tankcalc.tui.desk import Entry as Typed
 from tankcalc.tui.fields import FIELDS, NOTE, READINGS, fields_of, takes
 from tankcalc.tui.help_text import help_lines
 from tankcalc.tui.log_lines import clock, log_row
-from tankcalc.tui.present import Line
+from tankcalc.tui.present import Line, figure
 from tankcalc.tui.scene import bands, labels
 from tankcalc.typed import NAMES
 
@@ -225,3 +225,15 @@ def test_presenting_needs_no_terminal_library() -> None:
         "sys.exit(bool({'textual', 'rich'} & set(sys.modules)))"
     )
     assert subprocess.run([sys.executable, "-c", code], check=False).returncode == 0
+
+
+def test_a_unit_of_two_words_is_left_out_whole() -> None:
+    line = figure("volume", "1020.5 US gal", 42, "+/- 15.91 US gal")
+    assert "".join(span for span, _ in line).endswith(" +/- 15.91")
+    line = figure("level", "40 ft 6 1/8 in", 41, "+/- 0.1 in")
+    assert "".join(span for span, _ in line).endswith(" +/- 0.1")
+
+
+def test_the_help_is_said_to_hold_what_the_footer_has_no_room_for() -> None:
+    assert footer(80)[0] == ("F1", "help: all")
+    assert footer(500)[0] == ("F1", "help")

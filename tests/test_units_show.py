@@ -9,7 +9,7 @@ from hypothesis import assume, given
 from hypothesis import strategies as st
 
 from tankcalc import units
-from tankcalc.units import UNIT_FOR, System
+from tankcalc.units import UNIT_FOR, System, base_words
 
 SHOWN = [
     # SI, dimension, metric, US, imperial
@@ -125,3 +125,13 @@ def test_feet_inches_and_sixteenths_read_back(metres: float) -> None:
     back = units.si(shown, "length")
     assert abs(back - metres) <= 0.0254 / 32 + 1e-9
     assert units.show(back, "length", "us") == shown
+
+
+def test_a_base_temperature_is_called_by_its_name() -> None:
+    assert [base_words(k, fahrenheit=True) for k in (288.15, 293.15, 288.15 + 5.0 / 9.0)] == [
+        "15 degC",
+        "20 degC",
+        "60 degF",
+    ]
+    assert base_words(298.15, fahrenheit=False) == "25.0 degC"
+    assert base_words(298.15, fahrenheit=True) == "77.0 degF"

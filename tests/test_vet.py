@@ -76,6 +76,44 @@ def test_a_doubt_does_not_keep_a_tank_from_being_used(tmp_path: Path) -> None:
     assert load_site(tmp_path).tank("S-9").transmitters["p1"].elevation_m == -0.5
 
 
+@pytest.mark.parametrize(
+    ("density", "said"),
+    [
+        ('model = "constant"\nvalue = "85 kg/m3"', "3: density.value: 85 kg/m3 is no usual"),
+        ('model = "constant"\nvalue = "8500 kg/m3"', "3: density.value: 8500 kg/m3 is no usual"),
+        (
+            'model = "expansion"\nreference = "845 kg/m3"\nat = "15 degC"\n'
+            'coefficient = "-8.3e-4 / K"',
+            "5: density.coefficient: the liquid shrinks with warmth by 0.00083 per K",
+        ),
+        (
+            'model = "expansion"\nreference = "845 kg/m3"\nat = "15 degC"\n'
+            'coefficient = "8.3e-3 / K"',
+            "5: density.coefficient: the liquid expands by 0.0083 per K",
+        ),
+        (
+            'model = "table"\npoints = [["0 degC", "850 kg/m3"], ["9 degC", "780 kg/m3"]]',
+            "3: density.points.2: the liquid expands",
+        ),
+        (
+            'model = "samples"\npoints = [["0 m", "850 kg/m3"], ["9 m", "78 kg/m3"]]',
+            "3: density.points: 78 kg/m3 is no usual",
+        ),
+    ],
+)
+def test_an_unlikely_liquid_is_told_and_can_be_used(
+    tmp_path: Path, density: str, said: str
+) -> None:
+    path = write(site_in(tmp_path), "fluids/x.toml", f"[density]\n{density}\n")
+    (problem,) = vet([path], tmp_path)
+    assert str(problem).startswith(f"fluids/x.toml:{said}")
+    assert load_site(tmp_path).fluid("x").layers
+
+
+def test_usual_liquids_raise_no_doubt() -> None:
+    assert vet([GOOD / "fluids"], GOOD) == []
+
+
 def write(folder: Path, name: str, text: str | bytes) -> Path:
     path = folder / name
     path.parent.mkdir(parents=True, exist_ok=True)

@@ -10,13 +10,16 @@ import itertools
 from abc import ABC, abstractmethod
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import ClassVar
+from typing import TYPE_CHECKING, ClassVar
 
 import numpy as np
 import numpy.typing as npt
 
 from tankcalc.constants import ICE_POINT_K
 from tankcalc.errors import RangeError
+
+if TYPE_CHECKING:
+    from tankcalc.fluids.vapour import Vapour
 
 FloatArray = npt.NDArray[np.float64]
 
@@ -125,6 +128,15 @@ class DensityModel(ABC):
     bulk_modulus_pa: float | None = None
     base_k: float | None = None
     source: str = "figures of the fluid file"
+
+    @property
+    def vapour(self) -> Vapour | None:
+        """What stands above the liquid where the model knows it; None: it does not."""
+        return None
+
+    def saturation_pa(self, temperature_k: float) -> float | None:
+        """Return the pressure (Pa, absolute) at which it boils; None: the model knows none."""
+        return None
 
     @abstractmethod
     def density(self, temperature_k: FloatArray) -> FloatArray:

@@ -8,7 +8,7 @@ from typing import ClassVar, Final
 
 import numpy as np
 
-from tankcalc.errors import InputError, RangeError
+from tankcalc.errors import FigureError, InputError, RangeError
 from tankcalc.fluids.models import DensityModel, FloatArray
 from tankcalc.fluids.petroleum_editions import (
     BASE_15C_K,
@@ -23,6 +23,7 @@ from tankcalc.fluids.petroleum_groups import COMMODITIES, REFINED
 GROUPS: Final = (*COMMODITIES, "special")
 EDITIONS: Final = (2004, 1980)
 BASES_K: Final = (BASE_15C_K, BASE_20C_K, BASE_60F_K)
+BASE_NAMES: Final = dict(zip(BASES_K, ("15 degC", "20 degC", "60 degF"), strict=True))
 REFINED_GROUPS: Final = tuple(group.name for group in REFINED.groups)
 
 
@@ -76,11 +77,11 @@ class Petroleum(DensityModel):
     def __post_init__(self) -> None:
         self._refuse_choices()
         if not 0.0 < self.reference_kg_m3 < float("inf"):
-            raise InputError("a reference density must be above zero.")
+            raise FigureError("reference", "a reference density must be above zero.")
         try:
             _ = self._equations
         except RangeError as error:
-            raise InputError(f"{error}{self._advice()}") from error
+            raise self._refusal(error) from error
 
     @property
     def base_k(self) -> float:  # type: ignore[override]
@@ -137,24 +138,46 @@ class Petroleum(DensityModel):
     def _of_group(self, group: str) -> Edition:
         """Return the equations with the reference density taken as that of a group."""
         make = Edition2004 if self.edition == 2004 else Edition1980
-        nearest = min(BASES_K, key=lambda base: abs(base - self.at_k))
-        return make(group, self.reference_kg_m3, nearest, self.expansion_per_k)
+        return make(group, self.reference_kg_m3, self._base_k, self.expansion_per_k)
 
     def _refuse_choices(self) -> None:
         """Refuse a group, an edition or a base there is not, and an expansion out of place."""
         if self.group not in GROUPS:
-            raise InputError(f"there is no such group of petroleum; there are {', '.join(GROUPS)}.")
+            raise FigureError(
+                "group", f"there is no such group of petroleum; there are {', '.join(GROUPS)}."
+            )
         if self.edition not in EDITIONS:
             raise InputError("the editions are 2004 and 1980.")
         if not any(abs(self.at_k - base) < 1e-6 for base in BASES_K):
-            raise InputError("a petroleum reference is at 15 degC, 20 degC or 60 degF.")
+            raise FigureError("at", "a petroleum reference is at 15 degC, 20 degC or 60 degF.")
         if (self.group == "special") != (self.expansion_per_k is not None):
-            raise InputError(
-                "a special liquid needs its expansion."
-                if self.group == "special"
-                else f"the expansion of {self.group} follows from its density; state none, "
-                'or take the group "special".'
+            if self.group == "special":
+                raise FigureError("group", "a special liquid needs its expansion.")
+            raise FigureError(
+                "expansion",
+                f"the expansion of {self.group} follows from its density; state none, "
+                'or take the group "special".',
             )
+
+    def _refusal(self, error: RangeError) -> FigureError:
+        """Return which figure is at fault, with the limits at the base that was stated."""
+        if self.group == "special":
+            return FigureError("expansion", str(error))
+        base = BASE_NAMES[self._base_k]
+        make = Edition2004 if self.edition == 2004 else Edition1980
+        low, high = make.densities(self.group, self._base_k)
+        return FigureError(
+            "reference",
+            f"{_figure(self.reference_kg_m3)} kg/m3 at {base} is outside the {self.edition} "
+            f'equations for the group "{self.group}", {_figure(low)} to {_figure(high)} kg/m3 '
+            f"at {base}."
+            f"{self._advice()}",
+        )
+
+    @property
+    def _base_k(self) -> float:
+        """The stated base, exactly."""
+        return min(BASES_K, key=lambda base: abs(base - self.at_k))
 
     def _advice(self) -> str:
         """Return which other refined group covers the density, if one does."""
@@ -167,3 +190,8 @@ class Petroleum(DensityModel):
                 continue
             return f' The group "{name}" covers it.'
         return ""
+
+
+def _figure(kg_m3: float) -> str:
+    """Return a density with two decimals at most."""
+    return f"{round(kg_m3, 2):.10g}"

@@ -65,6 +65,14 @@ class Edition2004(Edition):
         density68 = petroleum_2004.density_on_1968_scale(k, self.density60)
         self.alpha60 = expansion(k, density68)
 
+    @staticmethod
+    def densities(group: str, at_k: float) -> tuple[float, float]:
+        """Return the first and last density of a group at a base, kg/m3."""
+        commodity, degf = COMMODITIES[group], degf_from_kelvin(at_k)
+        ends = np.array([commodity.low_kg_m3, commodity.high_kg_m3])
+        low, high = ends * petroleum_2004.factors_from_60(commodity, ends, degf).ctl
+        return float(low), float(high)
+
     @property
     def limits_k(self) -> tuple[float, float]:
         """-50 to 150 degC, in K."""
@@ -110,6 +118,16 @@ class Edition1980(Edition):
         self.degree_k = 1.0 / 1.8 if in_degf else 1.0
         self.group = self._group(group, per_k)
         self.own = self._at_base(np.asarray(reference), np.asarray(at_k))
+
+    @staticmethod
+    def densities(group: str, at_k: float) -> tuple[float, float]:
+        """Return the first and last density of a group at a base, kg/m3."""
+        base = petroleum_1980.BASE_60F if at_k == BASE_60F_K else petroleum_1980.BASE_15C
+        limits = base.groups[group]
+        ends = np.array([limits.low_kg_m3, limits.high_kg_m3])
+        t = base.at if at_k == BASE_60F_K else at_k - ICE_POINT_K
+        low, high = ends * petroleum_1980.vcf(base, limits, ends, t)
+        return float(low), float(high)
 
     def _group(self, name: str, per_k: float | None) -> Group:
         if per_k is not None:

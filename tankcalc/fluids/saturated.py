@@ -8,9 +8,11 @@ from typing import TYPE_CHECKING, Any, ClassVar, NamedTuple
 
 import numpy as np
 
+from tankcalc.constants import GAS_CONSTANT_J_MOL_K, ICE_POINT_K
 from tankcalc.errors import InputError, RangeError
 from tankcalc.fluids.components import COMPONENTS, whole
 from tankcalc.fluids.models import DensityModel, FloatArray
+from tankcalc.fluids.vapour import Vapour
 
 if TYPE_CHECKING:
     from types import ModuleType
@@ -20,16 +22,27 @@ METHOD = "saturated"
 NODES = 64
 """Chebyshev points over the range: the curve is then within 1e-6 of the library's."""
 
+USUAL_K = ICE_POINT_K + 15.0
+"""Temperature of the vapour that counts, where the liquid has it, K."""
+
 COUNTS = 0.1
 """A component of at least this mole fraction may freeze out at its own triple point."""
 
 
 class _Curve(NamedTuple):
-    """Density over the whole range, as Chebyshev coefficients."""
+    """Density and log of pressure over the whole range, as Chebyshev coefficients."""
 
     low_k: float
     high_k: float
-    coefficients: FloatArray
+    density: FloatArray
+    log_pa: FloatArray
+
+    def at(self, coefficients: FloatArray, temperature_k: FloatArray | float) -> FloatArray:
+        """Return one of the two at temperatures in K."""
+        x = (2.0 * np.asarray(temperature_k) - self.low_k - self.high_k) / (
+            self.high_k - self.low_k
+        )
+        return np.asarray(np.polynomial.chebyshev.chebval(x, coefficients))
 
 
 @dataclass(frozen=True)
@@ -81,24 +94,63 @@ class Saturated(DensityModel):
     @cached_property
     def _curve(self) -> _Curve:
         library = _library()
-        names = [COMPONENTS[name].library for name, _ in self.composition]
-        shares = [share for _, share in self.composition]
+        names, shares = self._names, self._shares
         pure = [library.AbstractState("HEOS", name) for name in names]
         low, high = _limits(pure, shares)
         x = np.cos(np.pi * (np.arange(NODES) + 0.5) / NODES)
         try:
-            state = library.AbstractState("HEOS", "&".join(names))
-            if len(names) > 1:
-                state.set_mole_fractions(shares)
-            rho = [_density(library, state, t) for t in low + 0.5 * (high - low) * (1.0 + x)]
+            state = self._state()
+            boiling = [_boiling(library, state, t) for t in low + 0.5 * (high - low) * (1.0 + x)]
         except ValueError as error:
             what = " and ".join(name for name, _ in self.composition)
             raise InputError(
                 f"CoolProp finds no saturated liquid of {what} mixed so. "
                 "Use a table of measured densities."
             ) from error
-        coefficients = np.polynomial.chebyshev.chebfit(x, np.asarray(rho), NODES - 1)
-        return _Curve(low, high, np.asarray(coefficients))
+        rho, pa = np.asarray(boiling).T
+        fits = [np.polynomial.chebyshev.chebfit(x, y, NODES - 1) for y in (rho, np.log(pa))]
+        return _Curve(low, high, *map(np.asarray, fits))
+
+    @property
+    def _names(self) -> list[str]:
+        return [COMPONENTS[name].library for name, _ in self.composition]
+
+    @property
+    def _shares(self) -> list[float]:
+        return [share for _, share in self.composition]
+
+    def _state(self) -> Any:
+        """Return the library's state of this liquid."""
+        state = _library().AbstractState("HEOS", "&".join(self._names))
+        if len(self.composition) > 1:
+            state.set_mole_fractions(self._shares)
+        return state
+
+    @cached_property
+    def vapour(self) -> Vapour | None:
+        """The vapour in equilibrium at 15 degC, or at the nearest temperature inside the limits.
+
+        Its molar mass, and its compressibility p / (rho R T), as it boils there.
+        """
+        library, state = _library(), self._state()
+        t = min(max(USUAL_K, self.limits_k[0]), self.limits_k[1])
+        try:
+            state.update(library.QT_INPUTS, 0.0, t)
+            moles = float(state.saturated_vapor_keyed_output(library.iDmolar))
+            shares = state.mole_fractions_vapor() if len(self._names) > 1 else [1.0]
+        except ValueError:
+            return None  # a notice tells of it where it matters
+        masses = [float(library.AbstractState("HEOS", name).molar_mass()) for name in self._names]
+        mass = sum(y * m for y, m in zip(shares, masses, strict=True))
+        compressibility = float(state.p()) / (moles * GAS_CONSTANT_J_MOL_K * t)
+        return Vapour(molar_mass_kg_mol=float(mass), compressibility=compressibility)
+
+    def saturation_pa(self, temperature_k: float) -> float | None:
+        """Return the bubble-point pressure (Pa, absolute); None outside the limits."""
+        curve = self._curve
+        if not curve.low_k <= temperature_k <= curve.high_k:
+            return None
+        return float(np.exp(curve.at(curve.log_pa, temperature_k)))
 
     def checked_density(self, temperature_k: FloatArray) -> FloatArray:
         """Return the density (kg/m3), refusing temperatures at which there is no liquid.
@@ -117,9 +169,7 @@ class Saturated(DensityModel):
 
     def density(self, temperature_k: FloatArray) -> FloatArray:
         """Return the density (kg/m3) at temperatures in K, an array of any shape."""
-        low, high, coefficients = self._curve
-        x = (2.0 * np.asarray(temperature_k) - low - high) / (high - low)
-        return np.asarray(np.polynomial.chebyshev.chebval(x, coefficients))
+        return self._curve.at(self._curve.density, temperature_k)
 
 
 def _library() -> ModuleType:
@@ -143,6 +193,7 @@ def _limits(pure: list[Any], shares: list[float]) -> tuple[float, float]:
     return max([*triple, 0.4 * mean]), 0.95 * mean
 
 
-def _density(library: Any, state: Any, temperature_k: float) -> float:
+def _boiling(library: Any, state: Any, temperature_k: float) -> tuple[float, float]:
+    """Return density (kg/m3) and pressure (Pa) at the bubble point."""
     state.update(library.QT_INPUTS, 0.0, float(temperature_k))
-    return float(state.rhomass())
+    return float(state.rhomass()), float(state.p())

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from tankcalc.constants import STANDARD_GRAVITY_M_S2
+from tankcalc.gauging.boiling import boiling
 from tankcalc.gauging.case import BoolArray, Case, FloatArray
 from tankcalc.gauging.comparisons import density_measured, misfit, unneeded, where_of
 from tankcalc.gauging.model import Model, State
@@ -34,6 +35,7 @@ def doubts(
     """
     case, level_m = model.case, state.surface_m
     notices = [*_surroundings(case), *_legs(case), *_vapour(found), *_shell(model)]
+    notices += boiling(model, state, ~refused)
     water, water_above = _water(case, level_m, ~refused)
     kept = ~refused & ~water_above
     notices += [*water, *_density(case, level_m, kept), *_limits(case, level_m, kept)]

@@ -10,12 +10,13 @@ import itertools
 from collections.abc import Callable
 from typing import TYPE_CHECKING, Any, NamedTuple
 
-from tankcalc.errors import InputError
+from tankcalc.errors import FigureError, InputError
 from tankcalc.profiles import density_builders as builders
 from tankcalc.profiles.findings import At, Findings, show
 from tankcalc.profiles.leaves import (
     UnfitError,
     choice,
+    date_text,
     fraction,
     leaf,
     listed,
@@ -48,6 +49,9 @@ def model(keys: dict[str, Any], make: Callable[[Values], DensityModel]) -> Table
             return None
         try:
             return Stated(make(values), values["uncertainty"])
+        except FigureError as error:
+            findings.add((*at, error.key) if values.get(error.key) is not None else at, str(error))
+            return None
         except InputError as error:
             findings.add(at, str(error))
             return None
@@ -152,7 +156,7 @@ DENSITY = ByKind(
                 "concentration": need(fraction()),
                 "grid": need(GRID),
                 "grid_source": need(text(160)),
-                "grid_date": need(text(40)),
+                "grid_date": need(leaf(date_text)),
             },
             builders.solution,
         ),

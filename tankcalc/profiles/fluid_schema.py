@@ -43,6 +43,7 @@ def read_fluid(document: Document) -> Fluid | None:
     elif values["density"] is not None:
         stated = values["density"]
         layers = (Layer(name, stated.model, None, stated.uncertainty_kg_m3),)
+        vapour = vapour or stated.model.vapour
     elif values["layer"] is not None:
         layers, vapour_of_top = _layers(values["layer"], document)
         vapour = vapour or vapour_of_top

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime
 from collections.abc import Callable
 from typing import Literal
 
@@ -114,6 +115,18 @@ def choice(*words: str) -> CoreSchema:
         return value
 
     return leaf(read)
+
+
+def date_text(value: object) -> str:
+    """Read a date, in quotes or not, into ISO text."""
+    if isinstance(value, datetime.date) and not isinstance(value, datetime.datetime):
+        return value.isoformat()
+    try:
+        return datetime.date.fromisoformat(value if isinstance(value, str) else "").isoformat()
+    except ValueError:
+        raise UnfitError(
+            f"{show(value)} is no date.", "Write year, month, day: 2026-11-30."
+        ) from None
 
 
 def flag() -> CoreSchema:

@@ -2,10 +2,16 @@
 
 from __future__ import annotations
 
-import datetime
-
 from tankcalc.profiles.findings import At, Findings, did_you_mean, show
-from tankcalc.profiles.leaves import UnfitError, flag, fraction, leaf, quantities, quantity, text
+from tankcalc.profiles.leaves import (
+    date_text,
+    flag,
+    fraction,
+    leaf,
+    quantities,
+    quantity,
+    text,
+)
 from tankcalc.profiles.tables import ListOf, Table, Values, may, need
 from tankcalc.tank import FloatingRoof, Shell, TableCertificate
 
@@ -98,18 +104,6 @@ FLOATING_ROOF = Table(
 )
 
 
-def _date(value: object) -> str:
-    """Read a date, in quotes or not, into ISO text."""
-    if isinstance(value, datetime.date) and not isinstance(value, datetime.datetime):
-        return value.isoformat()
-    try:
-        return datetime.date.fromisoformat(value if isinstance(value, str) else "").isoformat()
-    except ValueError:
-        raise UnfitError(
-            f"{show(value)} is no date.", "Write year, month, day: 2026-11-30."
-        ) from None
-
-
 def _certificate(values: Values, at: At, findings: Findings) -> TableCertificate | None:
     date, expires = values["date"], values["expires"]
     if date and expires and not expires > date:
@@ -121,8 +115,8 @@ def _certificate(values: Values, at: At, findings: Findings) -> TableCertificate
 CERTIFICATE = Table(
     {
         "certificate": may(text(), ""),
-        "date": may(leaf(_date), ""),
-        "expires": may(leaf(_date), ""),
+        "date": may(leaf(date_text), ""),
+        "expires": may(leaf(date_text), ""),
         "uncertainty": may(fraction()),
     },
     _certificate,

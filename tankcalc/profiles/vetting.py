@@ -9,6 +9,7 @@ from pathlib import Path
 from tankcalc.errors import Problem
 from tankcalc.profiles.documents import Document
 from tankcalc.profiles.findings import did_you_mean, show
+from tankcalc.profiles.fluid_checks import note_fluid_doubts
 from tankcalc.profiles.fluid_schema import FLUID, read_fluid
 from tankcalc.profiles.names import SUFFIX, files_in, is_clean, names_in
 from tankcalc.profiles.site import FLUIDS, TANKS, Site, read_site
@@ -72,7 +73,9 @@ def _vet_document(document: Document, home: Path) -> None:
         case "site":
             read_site(document)
         case "fluid":
-            read_fluid(document)
+            fluid = read_fluid(document)
+            if fluid is not None:
+                note_fluid_doubts(fluid, document.findings)
         case "tank":
             _vet_tank(document, home)
         case _:

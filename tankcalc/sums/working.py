@@ -20,7 +20,7 @@ from tankcalc.gauging.roof import roof_adjustment_m3
 from tankcalc.gauging.shell import linear_growth, shell_temperature_k
 from tankcalc.sums.book import Book
 from tankcalc.sums.given import FactorGiven, Given, HeadGiven, Line, RoofGiven, ShellGiven
-from tankcalc.units import to_unit
+from tankcalc.units import base_words
 
 
 def working(given: Given, book: Book) -> tuple[Line, ...]:
@@ -188,8 +188,7 @@ def _source(given: Given, factor: FactorGiven, book: Book) -> str:
         return factor.source
     reference = book.show(book.kept(given.reference_kg_m3, 1), 1)
     unit = book.temperature_unit
-    base = to_unit(factor.base_k, unit, "temperature")
-    made_of = f"{factor.source}; {reference} kg/m3 at {round(base, 2):g} {unit}"
+    made_of = f"{factor.source}; {reference} kg/m3 at {base_words(factor.base_k, book.fahrenheit)}"
     if factor.liquid_k is None:
         return f"{made_of}, mean {given.density_kg_m3:.4f} kg/m3 in the tank"
     return f"{made_of}, liquid at {book.show(book.temperature(factor.liquid_k), 1)} {unit}"

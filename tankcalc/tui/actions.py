@@ -121,7 +121,7 @@ class Actions:
             pages.append(("corrections", self._corrections))
             pages.append(("agreement", self._agreement))
             pages.append(("sums", self._sums))
-        self._app.push_screen(DetailScreen(title, pages))
+        self._app.push_screen(DetailScreen(title, pages, self.units))
 
     def liquid(self) -> None:
         """Try a liquid, beginning from the one in the tank."""
@@ -283,7 +283,7 @@ class Actions:
         lines: list[Line] = []
         for rounding in ROUNDINGS:
             found = sums(answer.tank, answer.fluid, answer.readings, rounding, shown)
-            lines += [*table(sums_table(found, rounding)), []]
+            lines += [*table(sums_table(found)), []]
         return lines
 
     def _in_full(self, width: int) -> list[Line]:

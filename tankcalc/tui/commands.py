@@ -79,6 +79,10 @@ MOVES = (
 """Keys that are no commands: (keys, what they do), for the help."""
 
 
+MORE = "help: all"
+"""What the help is called where the footer has no room for every key."""
+
+
 def footer(width: int, letters: bool = False) -> list[tuple[str, str]]:
     """Return (key, label) of the commands a footer of this width has room for, in order.
 
@@ -87,7 +91,12 @@ def footer(width: int, letters: bool = False) -> list[tuple[str, str]]:
     kept = list(COMMANDS)
     while len(kept) > 1 and _footer_width(kept, letters) > width:
         kept.remove(max(kept, key=lambda command: command.rank))
-    return [(_key(command, letters), command.label) for command in kept]
+    return [(_key(command, letters), _label(command, len(kept))) for command in kept]
+
+
+def _label(command: Command, shown: int) -> str:
+    """Return what the footer says of a key; where keys have no room, that the help has more."""
+    return MORE if command.id == "help" and shown < len(COMMANDS) else command.label
 
 
 def _key(command: Command, letters: bool) -> str:
@@ -97,4 +106,6 @@ def _key(command: Command, letters: bool) -> str:
 
 def _footer_width(commands: list[Command], letters: bool) -> int:
     """Return the columns a footer of these commands takes."""
-    return sum(len(_key(c, letters)) + len(c.label) + 2 for c in commands) - 1
+    labels = [_label(command, len(commands)) for command in commands]
+    keys = [_key(command, letters) for command in commands]
+    return sum(len(key) + len(label) + 2 for key, label in zip(keys, labels, strict=True)) - 1

@@ -70,7 +70,7 @@ def figures(trial: Trial, tank: Tank, system: System) -> list[tuple[str, str]]:
         base_k = tank.surroundings.standard_temperature_k
     if model.limits_k[0] <= base_k <= model.limits_k[1]:
         base = _density(model, base_k)
-        label = f"base, {units.show(base_k, 'temperature', system)}"
+        label = f"base, {units.base_words(base_k, system != 'metric')}"
         rows.append((label, units.show(base, "density", system) if base > 0.0 else "none"))
     return [*rows, ("limits", limits(model, system))]
 

@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from functools import cache
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, NamedTuple
 
 from tankcalc.errors import InputError
 from tankcalc.profiles.density_schema import DENSITY
 from tankcalc.profiles.documents import Document
-from tankcalc.profiles.fluid_file import Origin
+from tankcalc.profiles.fluid_file import Origin, name_from
 from tankcalc.profiles.names import SUFFIX
 from tankcalc.profiles.site import FLUIDS
 from tankcalc.profiles.tables import Key, Table
@@ -37,10 +37,12 @@ class DraftField:
 OWN_FIELDS = (
     DraftField(
         TEMPERATURE,
-        "TRY AT",
+        "try at",
         'the liquid\'s temperature, "18 degC", or "1 m: 18 degC, 5 m: 21 degC"; it is not saved',
     ),
-    DraftField(NAME, "shown name", "what operators see, up to 40 characters; empty: the file name"),
+    DraftField(
+        NAME, "shown name", "what operators see, up to 40 characters; empty: made of the file name"
+    ),
     DraftField(FILE, "file name", "letters, digits, - and _, such as gas-oil-2"),
 )
 
@@ -72,12 +74,21 @@ def id_of(path: Path) -> str:
 
 
 @cache
-def _fields_of(model: str) -> tuple[DraftField, ...]:
+def fields_of(model: str) -> tuple[DraftField, ...]:
     """Return the fields of a model's keys; they are asked for with every key pressed."""
     return tuple(
         DraftField(id_of(path), path[-1].replace("_", " "), _takes(key), key.needed)
         for path, key in keys_of(model).items()
     )
+
+
+class Began(NamedTuple):
+    """What a draft held when it began."""
+
+    model: str
+    texts: Mapping[str, str]
+    name: str
+    stem: str
 
 
 @dataclass(slots=True)
@@ -91,15 +102,15 @@ class LiquidDraft:
     origin: Origin | None = None
     _texts: dict[tuple[str, str], str] = field(default_factory=dict)
     _latest: dict[str, str] = field(default_factory=dict)
-    _began: object = None
+    began: Began = field(init=False)
 
     def __post_init__(self) -> None:
         self._latest = {id: text for (_, id), text in self._texts.items()}
-        self._began = self._state()
+        self.began = self._state()
 
     def fields(self) -> list[DraftField]:
         """Return what can be typed for the model, its own keys first."""
-        return [*_fields_of(self.model), *OWN_FIELDS]
+        return [*fields_of(self.model), *OWN_FIELDS]
 
     def text(self, id: str) -> str:
         """Return what a field holds."""
@@ -158,13 +169,27 @@ class LiquidDraft:
         return self.origin is not None and self.origin.stem == self.stem.strip()
 
     @property
+    def has_vapour(self) -> bool:
+        """Whether the file it began from states what is above the liquid."""
+        return self.origin is not None and self.origin.has_vapour
+
+    @property
+    def shown_name(self) -> str:
+        """The name to be saved: as typed; a new file's own where it is still that of another."""
+        typed = self.name.strip()
+        if self.in_place:
+            return typed
+        inherited = self.origin is not None and typed == self.began.name.strip()
+        return name_from(self.stem.strip()) if inherited or not typed else typed
+
+    @property
     def changed(self) -> bool:
         """Whether leaving would lose something: the temperature to try at is no loss."""
-        return self._state() != self._began
+        return self._state() != self.began
 
-    def _state(self) -> object:
-        mine = {key: text for key, text in self._texts.items() if key[0] == self.model and text}
-        return self.model, mine, self.name, self.stem
+    def _state(self) -> Began:
+        mine = {id: text for (of, id), text in self._texts.items() if of == self.model and text}
+        return Began(self.model, mine, self.name, self.stem)
 
 
 def opened(site: Site, stem: str) -> LiquidDraft:
@@ -212,7 +237,7 @@ def _single(document: Document, stem: str) -> LiquidDraft:
         model=density["model"],
         name=name if isinstance(name, str) else "",
         stem=stem,
-        origin=Origin(stem, document.held),
+        origin=Origin(stem, document.held, "vapour" in document.data),
         _texts=texts,
     )
 

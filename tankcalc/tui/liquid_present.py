@@ -6,10 +6,11 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from tankcalc.text import clean
-from tankcalc.tui.liquid_draft import MODEL, LiquidDraft, models
+from tankcalc.tui.liquid_draft import MODEL, NAME, LiquidDraft, fields_of, models
 from tankcalc.tui.present import Line, clip, spread, units_word, wrapped
 
 if TYPE_CHECKING:
+    from tankcalc.profiles.fluid_users import Users
     from tankcalc.tui.liquid_curves import Shown
     from tankcalc.tui.liquid_trial import Trial
 
@@ -74,21 +75,67 @@ def key_line(typing: bool, width: int) -> Line:
     """Return the row of keys; the letters act where no field is being typed in."""
     acts = "  ".join(f"{key if typing else f'{key}/{letter}'} {word}" for key, letter, word in KEYS)
     move = "PgUp PgDn model" if typing else "Left Right model"
-    return [(clip(f" {move}  {acts}  Esc back", width).ljust(width), "bar")]
+    leave = "Esc leaves field" if typing else "Esc back"
+    return [(clip(f" {move}  {acts}  {leave}", width).ljust(width), "bar")]
 
 
-def to_save(draft: LiquidDraft, width: int) -> list[Line]:
-    """Return what will be written, and where."""
+def to_save(draft: LiquidDraft, users: Users, width: int) -> list[Line]:
+    """Return what will be written, where, what it was before, and who uses it."""
     where = f"fluids/{draft.stem.strip()}.toml"
-    what = f"{where} is a new file."
-    if draft.in_place:
-        what = f"{where} is changed: its comments stay, and the old file is kept beside it."
-    lines: list[Line] = wrapped(what, "key", width)
-    lines += wrapped("; ".join((f"model {draft.model}", *_typed(draft))), "", width)
-    if draft.in_place:
-        words = "Every tank that holds it is calculated with it from then on."
+    if not draft.in_place:
+        lines = wrapped(f'{where} is a new file, shown as "{draft.shown_name}".', "key", width)
+        lines += wrapped("; ".join((f"model {draft.model}", *_typed(draft))), "", width)
+        return lines + (wrapped(_VAPOUR, "", width) if draft.has_vapour else [])
+    what = f"{where} is changed: its comments stay, and the old file is kept beside it."
+    lines = wrapped(what, "key", width)
+    if draft.model != draft.began.model:
+        words = f"! ANOTHER MODEL: {draft.began.model} -> {draft.model}"
+        lines += wrapped(words, "check", width)
+    for change in _changes(draft):
+        lines += wrapped(change, "", width)
+    for words in _used_by(users):
         lines += wrapped(words, "", width)
     return lines
+
+
+_VAPOUR = "The [vapour] of the file it began from goes along."
+
+
+def _changes(draft: LiquidDraft) -> list[str]:
+    """Return each figure that is not what it was, old and new."""
+    old = {id: text.strip() for id, text in draft.began.texts.items()}
+    labels = {
+        one.id: one.label for model in (draft.began.model, draft.model) for one in fields_of(model)
+    }
+    new = {id: draft.text(id).strip() for id in labels if draft.text(id).strip()}
+    old[NAME], new[NAME] = draft.began.name.strip(), draft.shown_name
+    labels[NAME] = "shown name"
+    changed = [id for id in labels if old.get(id, "") != new.get(id, "")]
+    lines = [f"{labels[id]}: {old.get(id) or 'none'} -> {new.get(id) or 'none'}" for id in changed]
+    return lines or [f"Nothing is changed: {'; '.join(_typed(draft))}"]
+
+
+def _used_by(users: Users) -> list[str]:
+    """Return whose figures change with the file."""
+    if not any(users):
+        return ["No tank holds it as its usual contents."]
+    tanks, fluids = (bounded(names) for names in users)
+    words = [f"Calculated with it from then on: {tanks}."] if tanks else []
+    return words + ([f"A layer of: {fluids}."] if fluids else [])
+
+
+def bounded(names: Sequence[str], most: int = 4) -> str:
+    """Return names joined, those that find no room counted.
+
+    Examples
+    --------
+    >>> bounded(["T-101", "T-102", "T-103"], 2), bounded(["T-101"])
+    ('T-101 and 2 more', 'T-101')
+    """
+    shown = names if len(names) <= most else names[: most - 1]
+    left = len(names) - len(shown)
+    words = ", ".join(clean(name, 40) for name in shown)
+    return f"{words} and {left} more" if left else words
 
 
 def _typed(draft: LiquidDraft) -> Sequence[str]:

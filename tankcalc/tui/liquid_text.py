@@ -55,6 +55,18 @@ def takes(holds: Holds) -> str:
     if wanted is None:
         return found[0].advice.rstrip(".")
     words = (wanted[1] + wanted[2]).replace(", in quotes", "").replace(" in quotes", "")
+    return as_typed(words)
+
+
+def as_typed(words: str) -> str:
+    """Return words about a file with the tables in them as they are typed here.
+
+    Examples
+    --------
+    >>> as_typed("such as { methane = 0.92, ethane = 0.08 }.")
+    'such as methane: 0.92, ethane: 0.08.'
+    """
+    words = words.replace("a table of names and fractions", "names with fractions")
     return _TABLE.sub(lambda table: table[1].replace(" = ", ": "), words)
 
 

@@ -15,6 +15,7 @@ from tankcalc.errors import TankcalcError
 from tankcalc.fluids.models import Temperatures
 from tankcalc.profiles.findings import Finding, Findings
 from tankcalc.profiles.fluid_schema import FLUID
+from tankcalc.tui import liquid_text
 from tankcalc.tui.liquid_draft import MODEL, NAME, TEMPERATURE, LiquidDraft, id_of
 from tankcalc.typed import readings_from_text
 
@@ -68,16 +69,22 @@ def _field_of(finding: Finding, draft: LiquidDraft) -> str:
     """Return the id of the field that a finding belongs to."""
     if finding.at[:1] == ("name",):
         return NAME
-    ids = {one.id for one in draft.fields()}
+    ids = [one.id for one in draft.fields()]
     path = tuple(str(key) for key in takewhile(lambda key: isinstance(key, str), finding.at[1:]))
     near = (id_of(path[:n]) for n in range(len(path), 0, -1))
-    return next((id for id in near if id in ids), MODEL)
+    found = next((id for id in near if id in ids), MODEL)
+    if found != MODEL or not path:
+        return found
+    # A table of several fields: the first of them that is empty is what it lacks.
+    inside = [id for id in ids if id.startswith(f"{id_of(path)}-")]
+    empty = [id for id in inside if not draft.text(id).strip()]
+    return [*empty, *inside, MODEL][0]
 
 
 def _words(finding: Finding) -> str:
     entry = next((key + 1 for key in finding.at if isinstance(key, int)), None)
     where = "" if entry is None else f"entry {entry}: "
-    return f"{where}{finding.what} {finding.advice}".rstrip()
+    return liquid_text.as_typed(f"{where}{finding.what} {finding.advice}".rstrip())
 
 
 def _temperatures(

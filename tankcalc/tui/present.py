@@ -94,8 +94,8 @@ def figure(label: str, value: str, width: int, give: str = "") -> Line:
 
 def _without_unit(give: str, value: str) -> str:
     """Return "+/- 0.031 m" as "+/- 0.031" beside a value in the same unit, else nothing."""
-    unit = value.rpartition(" ")[2]
-    return give.removesuffix(f" {unit}") if give.endswith(f" {unit}") else ""
+    sign, number, unit = (*give.split(" ", 2), "", "", "")[:3]
+    return f"{sign} {number}" if unit and value.endswith(f" {unit}") else ""
 
 
 def messages(answer: Answer, said: str, hint: str, width: int, height: int) -> list[Line]:

@@ -11,7 +11,7 @@ display    a value to text, per system of units
 from __future__ import annotations
 
 from tankcalc.units.dimensions import DIMENSIONS
-from tankcalc.units.display import UNIT_FOR, System, from_unit, show, to_unit
+from tankcalc.units.display import UNIT_FOR, System, base_words, from_unit, show, to_unit
 from tankcalc.units.parser import Quantity, parse, parse_any, si
 from tankcalc.units.table import NAMES, Unit
 
@@ -22,6 +22,7 @@ __all__ = [
     "Quantity",
     "System",
     "Unit",
+    "base_words",
     "from_unit",
     "parse",
     "parse_any",

@@ -69,6 +69,9 @@ _SHOWN: Final[dict[str, dict[str, tuple[_Shown, ...]]]] = {
     },
 }
 
+BASES: Final = ((288.15, "15 degC"), (293.15, "20 degC"), (273.15 + 28.0 / 1.8, "60 degF"))
+"""Base temperatures (K) that have a name."""
+
 UNIT_FOR: Final[dict[str, dict[str, str]]] = {
     system: {dimension: shown[-1].unit for dimension, shown in table.items()}
     for system, table in _SHOWN.items()
@@ -104,6 +107,20 @@ def show(si: float, dimension: str, system: System = "metric", *, digits: int | 
     decimals = shown.decimals if digits is None else digits
     text = f"{number:.4g}" if decimals < 0 else _rounded(number, decimals)
     return text if shown.unit == "1" else f"{text} {shown.unit}"
+
+
+def base_words(kelvin: float, fahrenheit: bool) -> str:
+    """Return a base temperature (K) as people name it; another one to a decimal of its degree.
+
+    Examples
+    --------
+    >>> base_words(288.15, True), base_words(273.15 + 28 / 1.8, False), base_words(298.15, False)
+    ('15 degC', '60 degF', '25.0 degC')
+    """
+    for named, words in BASES:
+        if math.isclose(kelvin, named, rel_tol=0.0, abs_tol=1e-6):
+            return words
+    return show(kelvin, "temperature", "us" if fahrenheit else "metric")
 
 
 def to_unit(si: float, unit: str, dimension: str | None = None) -> float:

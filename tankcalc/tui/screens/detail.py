@@ -21,11 +21,15 @@ class DetailScreen(ReadScreen):
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("right,tab", "turn(1)", show=False),
         Binding("left,shift+tab", "turn(-1)", show=False),
+        Binding("f3,u", "units", show=False),
         *(Binding(str(n), f"page_number({n})", show=False) for n in range(1, 10)),
     ]
 
-    def __init__(self, title: str, pages: Sequence[Page]) -> None:
+    ACTS = "Left Right or its number turns   F3 units   Esc goes back"
+
+    def __init__(self, title: str, pages: Sequence[Page], units: Callable[[], None]) -> None:
         super().__init__(title, lambda width: self._page(width))
+        self._units = units
         self._pages = pages
         self._at = 0
         self._held: dict[tuple[int, int], Sequence[Line]] = {}
@@ -54,6 +58,12 @@ class DetailScreen(ReadScreen):
         """Show the page of that number."""
         if number <= len(self._pages):
             self._open(number - 1)
+
+    def action_units(self) -> None:
+        """Show the next system of units, here and behind."""
+        self._units()
+        self._held.clear()
+        self.say(self.text())
 
     def _open(self, page: int) -> None:
         self._at, self._first = page, 0

@@ -13,7 +13,8 @@ from textual.containers import Horizontal, Vertical
 from textual.screen import ModalScreen
 
 from tankcalc.errors import TankcalcError
-from tankcalc.profiles.fluid_file import save_fluid
+from tankcalc.profiles.fluid_file import DEMO, refuse_name, save_fluid
+from tankcalc.profiles.fluid_users import Users, users_of
 from tankcalc.text import clean
 from tankcalc.tui import liquid_present
 from tankcalc.tui.liquid_curves import Shown, shown_of
@@ -157,17 +158,27 @@ class LiquidScreen(ModalScreen[Kept | None]):
         """Show what will be written, and write it on Enter."""
         self._take_typed()
         trial = self._shown.trial
-        if trial.model is None or trial.problems.keys() - {TEMPERATURE}:
+        wrong = trial.problems.keys() - {TEMPERATURE}
+        if trial.model is None or wrong - {FILE}:
             return self._say("Nothing to save yet: a figure is wrong or missing.", "check")
+        if wrong:
+            self.form.go(FILE)
+            return self._say("Not saved: this name cannot be used.", "check")
         if not self._draft.stem.strip():
             self.form.go(FILE)
             return self._say("Type the name of the file, then F5 again.", "check")
-        self.app.push_screen(AskSave(self._draft), self._save)
+        if self._site.is_demo:
+            return self._say(DEMO, "refused")
+        users = users_of(self._site, self._draft.stem.strip()) if self._draft.in_place else Users()
+        self.app.push_screen(AskSave(self._draft, users), self._save)
         return None
 
     def action_leave(self) -> None:
-        """Go back; ask first where something typed would be lost."""
+        """Leave the field, or go back; ask first where something typed would be lost."""
         self._take_typed()
+        if self.form.current:
+            self.query_one(ModelChoice).focus()
+            return
         if self._draft.changed or self._other.changed:
             words = "The liquid as it was typed is in no file; leaving loses it."
             self.app.push_screen(AskLoss("LEAVE WITHOUT SAVING?", words), self._leave)
@@ -199,7 +210,7 @@ class LiquidScreen(ModalScreen[Kept | None]):
         draft = self._draft
         stem = draft.stem.strip()
         try:
-            saved = save_fluid(self._site, stem, draft.name.strip(), draft.stated(), draft.origin)
+            saved = save_fluid(self._site, stem, draft.shown_name, draft.stated(), draft.origin)
         except TankcalcError as error:
             return self._say(f"NOT SAVED: {error}", "refused")
         old = "" if saved.kept is None else f"; the old file is {clean(saved.kept.name)}"
@@ -238,10 +249,20 @@ class LiquidScreen(ModalScreen[Kept | None]):
         except Exception as error:  # noqa: BLE001 - a defect must not leave an old curve in sight
             self._shown = Shown()
             self._said = f"This program failed; nothing is shown. {self._note(error)}", "refused"
+        self._check_name()
         self.form.mark(self._shown.trial.problems)
         self.query_one("#over-temperature", ProfileChart).draw(self._shown.over_temperature)
         self.query_one("#over-elevation", ProfileChart).draw(self._shown.over_elevation)
         self._rebuild("#liquid-figures", "#liquid-said")
+
+    def _check_name(self) -> None:
+        """Tell of a name that cannot be, or is another fluid's, while it is typed."""
+        stem = self._draft.stem.strip()
+        try:
+            if stem:
+                refuse_name(self._site, stem, self._draft.origin)
+        except TankcalcError as error:
+            self._shown.trial.problems[FILE] = str(error)
 
     def _say(self, words: str, style: str) -> None:
         self._said = words, style

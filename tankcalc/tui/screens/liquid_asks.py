@@ -7,6 +7,7 @@ from typing import ClassVar
 
 from textual.binding import Binding, BindingType
 
+from tankcalc.profiles.fluid_users import Users
 from tankcalc.tui.liquid_draft import LiquidDraft
 from tankcalc.tui.liquid_present import to_save
 from tankcalc.tui.present import Line, wrapped
@@ -52,10 +53,10 @@ class AskSave(AskLoss):
 
     KEYS_TEXT = "Enter saves it   Esc goes back"
 
-    def __init__(self, draft: LiquidDraft) -> None:
-        super().__init__("SAVE THIS LIQUID?", "")
-        self._draft = draft
+    def __init__(self, draft: LiquidDraft, users: Users) -> None:
+        super().__init__("WRITE OVER IT?" if draft.in_place else "SAVE THIS LIQUID?", "")
+        self._draft, self._users = draft, users
 
     def text(self) -> list[Line]:
-        """Say which file, what becomes of the old one, and the figures."""
-        return to_save(self._draft, self.size.width - 2)
+        """Say which file, what becomes of the old one, the figures, and who uses them."""
+        return to_save(self._draft, self._users, self.size.width - 2)

@@ -19,6 +19,7 @@ class ReadScreen(Dialog[None]):
     ReadScreen #box { height: 100%; }
     ReadScreen #text { height: 1fr; }
     """
+    ACTS: ClassVar[str] = "Esc goes back"
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("up", "move(-1)", show=False),
         Binding("down", "move(1)", show=False),
@@ -47,7 +48,7 @@ class ReadScreen(Dialog[None]):
         shown = list(lines)[self._first : self._first + room]
         self.query_one("#text", Lines).show(shown)
         more = f"{below} more rows: Down, PgDn" if below else "end of text"
-        self.keys(f"Esc goes back   {more}")
+        self.keys(f"{self.ACTS}   {more}")
 
     def action_move(self, by: int) -> None:
         """Move by rows."""

@@ -14,10 +14,14 @@ from textual.message import Message
 from textual.widgets import Input
 
 from tankcalc.text import clean
+from tankcalc.tui.ascii import columns
 from tankcalc.tui.liquid_draft import DraftField
 from tankcalc.tui.present import Line, clip
 from tankcalc.tui.widgets.lines import Lines
 from tankcalc.tui.widgets.word_field import WordField
+
+MORE = "~"
+"""Beside a field that holds more than is seen."""
 
 LONGEST = 4000
 """A table of points is typed as one line."""
@@ -130,6 +134,7 @@ class LiquidForm(ScrollableContainer, can_focus=False):
     def on_input_changed(self, event: Input.Changed) -> None:
         """Tell that a field holds another text."""
         event.stop()
+        self._label()
         self.post_message(FigureTyped())
 
     def on_input_submitted(self, event: Input.Submitted) -> None:
@@ -154,11 +159,18 @@ class LiquidForm(ScrollableContainer, can_focus=False):
         lines: list[Line] = []
         for field in self._fields:
             at, wrong = field.id == self.current, field.id in self._wrong
+            more = MORE if self._is_cut(field.id) else " "
             lead, style = (">", "key") if at else (" ", "")
             lines.append(
                 [
                     (f"{lead}{clip(field.label, 14):<14}", style),
-                    ("X " if wrong else "  ", "refused" if wrong else ""),
+                    ("X" if wrong else " ", "refused" if wrong else ""),
+                    (more, "key"),
                 ]
             )
         return lines
+
+    def _is_cut(self, id: str) -> bool:
+        """Return whether a field holds more than it has room to show."""
+        field = next((one for one in self.query(FigureField) if one.id == id), None)
+        return field is not None and 0 < field.size.width < columns(field.value)
