@@ -16,6 +16,7 @@ import numpy.typing as npt
 
 from tankcalc.errors import InputError, RangeError
 from tankcalc.fluids.fluid import Fluid
+from tankcalc.gauging import evaluate
 from tankcalc.gauging.inputs import inputs_of
 from tankcalc.gauging.solve import solve
 from tankcalc.gauging.spread import outputs_of_spread
@@ -134,6 +135,11 @@ def with_uncertainty(result: Result, budget: Budget | None) -> Result:
     if budget is None or result.status == "refused":
         return result
     return replace(result, expanded_uncertainty=budget.expanded)
+
+
+def answered(tank: Tank, fluid: Fluid, readings: Readings) -> Result:
+    """Return what ``evaluate`` answers to one set of readings, with its uncertainty."""
+    return with_uncertainty(evaluate(tank, fluid, readings), assess(tank, fluid, readings))
 
 
 def simulate(

@@ -148,6 +148,8 @@ class TankFile:
     name: str = "Tank 101"
     file: str = "T-101"
     version: str = VERSIONS["tank"]
+    transmitters: dict[str, Any] = field(default_factory=dict)
+    dp: None = None
 
 
 FLUID = Fluid("Gas oil", (), file="gas-oil", version=VERSIONS["fluid"])

@@ -12,7 +12,8 @@ from hypothesis import strategies as st
 from shiftlog_samples import NOON_US, VERSIONS, sample
 
 from tankcalc.shiftlog import Row, as_object, as_text
-from tankcalc.shiftlog.listing import LATE_US
+from tankcalc.shiftlog.entry import JUDGEMENTS, LATE_US
+from tankcalc.shiftlog.kinds import KINDS
 
 MINUTE_US = 60_000_000
 
@@ -52,8 +53,12 @@ def test_the_local_time_has_the_offset_of_that_day() -> None:
 
 
 def test_a_late_entry_says_so() -> None:
-    assert "late" not in as_text(row(entered_us=NOON_US + LATE_US - 1))
-    assert "entered late, 2026-12-01 12:15+00:00" in as_text(row(entered_us=NOON_US + LATE_US))
+    assert "late" not in as_text(row(entered_us=NOON_US + LATE_US))
+    assert "entered late, 2026-12-01 12:15+00:00" in as_text(row(entered_us=NOON_US + LATE_US + 1))
+    assert [as_object(row(entered_us=NOON_US + LATE_US + n))["late"] for n in (0, 1)] == [
+        False,
+        True,
+    ]
 
 
 @pytest.mark.parametrize("status", ["check", "refused"])
@@ -85,16 +90,38 @@ HOSTILE = st.text(max_size=120) | st.sampled_from(
 )
 
 
-@given(note=HOSTILE, who=HOSTILE, tank=HOSTILE, shift=HOSTILE, typed=HOSTILE, message=HOSTILE)
+TYPED = ("p1", "received", "delivered", "other", "of", "what", "until", "fault", "instrument")
+
+
+@given(
+    note=HOSTILE,
+    who=HOSTILE,
+    tank=HOSTILE,
+    shift=HOSTILE,
+    typed=st.dictionaries(st.sampled_from(TYPED), HOSTILE),
+    message=HOSTILE,
+    kind=st.sampled_from(KINDS),
+    judgement=st.sampled_from(JUDGEMENTS),
+)
 def test_hostile_text_stays_inside_80_columns_and_harmless(
-    note: str, who: str, tank: str, shift: str, typed: str, message: str
+    note: str,
+    who: str,
+    tank: str,
+    shift: str,
+    typed: dict[str, str],
+    message: str,
+    kind: str,
+    judgement: str,
 ) -> None:
     hostile = row(
         note=note,
+        reason=note,
+        kind=kind,
+        judgement=judgement,
         who=who,
         tank=tank,
         shift=shift,
-        typed={"p1": typed},
+        typed=typed,
         result={"status": "check", "level_m": 1.0, "warnings": [{"message": message}]},
     )
     assert_harmless(as_text(hostile))

@@ -8,6 +8,7 @@ from hashlib import sha256
 from pathlib import Path
 
 import pytest
+from postgres_server import running
 from shiftlog_samples import NOON_US, TEXTS, VERSIONS, sample
 
 from tankcalc.errors import StoreError, StoreUnavailableError
@@ -28,13 +29,14 @@ HOSTILE = (
 Opener = Callable[[], Store]
 
 
-@pytest.fixture(params=["sqlite"])
+@pytest.fixture(params=["sqlite", "postgresql"])
 def opener(request: pytest.FixtureRequest, tmp_path: Path) -> Iterator[Opener]:
-    addresses = {"sqlite": tmp_path / "folder" / "log.sqlite"}
+    is_file = request.param == "sqlite"
+    address = str(tmp_path / "folder" / "log.sqlite") if is_file else running().new_database()
     opened: list[Store] = []
 
     def one_more() -> Store:
-        opened.append(open_store(addresses[request.param]))
+        opened.append(open_store(address))
         return opened[-1]
 
     yield one_more

@@ -27,8 +27,8 @@ def log(tmp_path: Path) -> Path:
         sample(note="1"),
         sample(note="2", ref=first.uid, reason="about the first"),
         sample(note="3", kind="note", tank=None, fluid=None, result=None),
-        sample(note="4"),
-        sample(note="5"),
+        sample(note="4", judgement="accepted", signals={"p1": "saturated"}, seen=4),
+        sample(note="5", kind="withdrawal", ref=first.uid, reason="of the wrong tank"),
     ):
         store.append(entry, TEXTS)
     assert store.verify().whole

@@ -12,7 +12,8 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from tankcalc.shiftlog.shifts import Shift, shift_at
+from tankcalc.errors import TimeError
+from tankcalc.shiftlog.shifts import LONGEST_RUN, Shift, shift_at, shift_named, shifts_between
 from tankcalc.shiftlog.times import iso_local, parse_time
 
 HOUR_US = 3_600_000_000
@@ -134,3 +135,120 @@ def test_shifts_follow_each_other_without_gap_or_overlap(
     assert shift_at(shift.end_us - 1, where, shifts) == shift
     assert shift_at(shift.end_us, where, shifts).start_us == shift.end_us
     assert shift_at(shift.start_us - 1, where, shifts).end_us == shift.start_us
+
+
+def test_every_quarter_of_an_hour_of_three_shifts_against_a_walk_through_the_year() -> None:
+    # A quarter at a time, the clock on the wall passes a start, and a new shift is on. In Santiago
+    # the clocks change at midnight, on Lord Howe by half an hour.
+    for name in ("America/Santiago", "Australia/Lord_Howe"):
+        zone = ZoneInfo(name)
+        t_us = parse_time("2026-01-01T06:00", zone)
+        on, date, hours = "Early", "2026-01-01", Counter[tuple[str, float]]()
+        began = t_us
+        while t_us < parse_time("2027-01-01T06:00", zone):
+            wall = datetime.fromtimestamp(t_us / 1e6, UTC).astimezone(zone)
+            starts = {6: "Early", 14: "Late", 22: "Night"}
+            if wall.minute == 0 and wall.hour in starts and starts[wall.hour] != on:
+                hours[(on, (t_us - began) / HOUR_US)] += 1
+                on, date, began = starts[wall.hour], wall.date().isoformat(), t_us
+            shift = shift_at(t_us, zone, THREE)
+            assert (shift.name, shift.date, shift.start_us) == (on, date, began)
+            t_us += QUARTER_US
+        step = 1.0 if name == "America/Santiago" else 0.5
+        assert hours[("Night", 8.0)] == 362
+        assert hours[("Night", 8.0 - step)] == hours[("Night", 8.0 + step)] == 1
+        assert hours[("Early", 8.0)] + hours[("Late", 8.0)] == 730
+
+
+@pytest.mark.parametrize(
+    ("text", "hours"),
+    [
+        ("2026-03-28 Night", 11),
+        ("2026-03-29 Night", 12),
+        ("2026-10-24 Night", 13),
+        ("2026-10-25 Day", 12),
+        ("  2026-12-01   day ", 12),
+    ],
+)
+def test_a_shift_is_found_by_its_date_and_name(text: str, hours: int) -> None:
+    berlin = ZoneInfo("Europe/Berlin")
+    shift = shift_named(text, berlin, TWO)
+    assert shift.length_us == hours * HOUR_US
+    assert shift.title.casefold() == " ".join(text.split()).casefold()
+    start = "06:00" if shift.name == "Day" else "18:00"
+    assert iso_local(shift.start_us, berlin)[:16] == f"{shift.date}T{start}"
+    assert shift_named(shift.title, berlin, TWO) == shift
+
+
+def test_a_name_of_two_words_and_names_that_differ_in_capitals() -> None:
+    lisbon = ZoneInfo("Europe/Lisbon")
+    shifts = {"Early watch": "06:00", "late": "14:00", "Late": "22:00"}
+    assert shift_named("2026-12-01 early  watch", lisbon, shifts).name == "Early watch"
+    assert shift_named("2026-12-01 Late", lisbon, shifts).name == "Late"
+    assert shift_named("2026-12-01 late", lisbon, shifts).name == "late"
+    with pytest.raises(TimeError, match="names no shift"):
+        shift_named("2026-12-01 LATE", lisbon, shifts)
+
+
+def test_the_date_alone_will_do_for_one_shift_a_day() -> None:
+    lisbon = ZoneInfo("Europe/Lisbon")
+    assert shift_named("2026-10-25", lisbon, {"Day": "00:00"}).length_us == 25 * HOUR_US
+    with pytest.raises(TimeError, match="Shifts here: Day, Night"):
+        shift_named("2026-10-25", lisbon, TWO)
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "",
+        "Day",
+        "2026-02-30 Day",
+        "01.12.2026 Day",
+        "2026-12-01 Swing",
+        "0001-01-01 Day",
+        "9999-12-31 Day",
+        "2026-12-01T06:00 Day",
+        "2026-12-01\x1b[31m Day",
+        "\u0661\u0662 Day",
+    ],
+)
+def test_what_names_no_shift_is_told(text: str) -> None:
+    with pytest.raises(TimeError) as told:
+        shift_named(text, ZoneInfo("Europe/Lisbon"), TWO)
+    assert "\x1b" not in str(told.value)
+
+
+def test_a_shift_that_the_clocks_leave_no_time_is_told_and_not_replaced() -> None:
+    berlin = ZoneInfo("Europe/Berlin")
+    shifts = {"A": "02:10", "B": "02:50", "C": "12:00"}
+    with pytest.raises(TimeError, match=r"no time of its own.*2026-03-29 B"):
+        shift_named("2026-03-29 A", berlin, shifts)
+    assert shift_named("2026-03-30 A", berlin, shifts).length_us == 40 * 60 * 1_000_000
+
+
+def test_a_date_that_a_zone_left_out_has_no_shift() -> None:
+    # Samoa had no 30 December 2011.
+    apia = ZoneInfo("Pacific/Apia")
+    with pytest.raises(TimeError, match="no time of its own"):
+        shift_named("2011-12-30 Day", apia, TWO)
+
+
+def test_the_shifts_of_a_span_are_those_with_any_time_in_it() -> None:
+    lisbon = ZoneInfo("Europe/Lisbon")
+    start = parse_time("2026-10-24T17:59", lisbon)
+    end = parse_time("2026-10-25T18:00", lisbon)
+    assert [s.title for s in shifts_between(start, end, lisbon, TWO)] == [
+        "2026-10-24 Day",
+        "2026-10-24 Night",
+        "2026-10-25 Day",
+    ]
+    assert [s.title for s in shifts_between(start, end + 1, lisbon, TWO)][-1] == "2026-10-25 Night"
+    assert list(shifts_between(start, start, lisbon, TWO)) == []
+
+
+def test_a_span_of_too_many_shifts_is_refused() -> None:
+    zone = ZoneInfo("UTC")
+    minute = {f"S{n}": f"{n // 60:02}:{n % 60:02}" for n in range(0, 1440, 60)}
+    span = (LONGEST_RUN + 1) * HOUR_US
+    with pytest.raises(TimeError, match="more than"):
+        list(shifts_between(0, span, zone, minute))

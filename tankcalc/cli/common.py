@@ -102,10 +102,8 @@ def answer(tank: Tank, fluid: Fluid, typed: dict[str, str]) -> Result:
     InputError
         Nothing was typed, or something cannot be read.
     """
-    from tankcalc.gauging import evaluate
-    from tankcalc.uncertainty import assess, with_uncertainty
+    from tankcalc.uncertainty import answered
 
     if not typed:
         raise InputError('no reading was given. Give one, such as --p1 "98.2 kPa".')
-    readings = readings_from(tank, typed)
-    return with_uncertainty(evaluate(tank, fluid, readings), assess(tank, fluid, readings))
+    return answered(tank, fluid, readings_from(tank, typed))

@@ -9,7 +9,7 @@ from typing import Any
 
 from tankcalc.errors import StoreCorruptError
 from tankcalc.shiftlog import schema
-from tankcalc.shiftlog.chain import Flaw, RawRow, VerifyResult, follow
+from tankcalc.shiftlog.chain import GENESIS, Flaw, RawRow, VerifyResult, follow
 
 Select = Callable[[str, tuple[Any, ...]], list[tuple[Any, ...]]]
 
@@ -34,17 +34,31 @@ def audit(
     """
     newest, counter = select(_ENDS, ())[0]
     texts, bad_text = _texts(select)
-    result = follow(_rows(select, newest or 0), texts.__contains__, known_head)
+    start = beginning(select)
+    result = follow(_rows(select, newest or 0), texts.__contains__, known_head, start)
     if result.flaw is None:
         why = (
             bad_text
-            or _why_cut(newest, counter)
+            or _why_cut(newest or start[0], counter or 0)
             or _why_altered(select, tables_of)
             or _why_torn(select)
         )
         if why:
             return replace(result, flaw=Flaw(None, why))
     return result
+
+
+def beginning(select: Select) -> tuple[int, bytes]:
+    """Return the number and hash that the log's first entry follows."""
+    if not select("SELECT 1 FROM sqlite_master WHERE name = 'beginning'", ()):
+        return 0, GENESIS
+    found = select("SELECT seq, hash FROM beginning", ())
+    if not found:
+        return 0, GENESIS
+    seq, digest = found[0]
+    if not isinstance(seq, int) or not isinstance(digest, bytes) or len(digest) != len(GENESIS):
+        raise StoreCorruptError("what the log goes on from is damaged.")
+    return seq, digest
 
 
 def _rows(select: Select, newest: int) -> Iterator[RawRow]:
@@ -79,10 +93,10 @@ def _texts(select: Select) -> tuple[set[str], str | None]:
     return whole, bad
 
 
-def _why_cut(newest: int | None, counter: int | None) -> str | None:
+def _why_cut(newest: int, counter: int) -> str | None:
     if newest == counter:
         return None
-    return f"the last entry is {newest or 0}, but the log has counted to {counter or 0}"
+    return f"the last entry is {newest}, but the log has counted to {counter}"
 
 
 def _why_altered(select: Select, tables_of: Callable[[int], set[str]]) -> str | None:

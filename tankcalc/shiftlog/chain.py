@@ -7,11 +7,12 @@ number and hash with what an earlier report printed.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from hashlib import sha256
 from typing import NamedTuple
 
+from tankcalc.errors import StoreCorruptError
 from tankcalc.shiftlog.entry import Entry, decoded
 
 GENESIS = bytes(32)
@@ -86,6 +87,7 @@ def follow(
     rows: Iterable[RawRow],
     has_config: Callable[[str], bool],
     known_head: tuple[int, str] | None = None,
+    start: tuple[int, bytes] = (0, GENESIS),
 ) -> VerifyResult:
     """Walk the chain from its first entry and return what was found.
 
@@ -97,11 +99,20 @@ def follow(
         Whether the store holds the text with that SHA-256 (hex).
     known_head : (int, str) or None
         Number and leading hex digits of the hash of a head seen earlier, as a report printed it.
+    start : (int, bytes)
+        Number and hash that the first entry follows: the head of the archive that the log goes
+        on from.
     """
-    head = (0, GENESIS)
-    entries = 0
+    head, entries = start, 0
+    if known_head is not None and known_head[0] == start[0] and start[0]:
+        why = _why_other(start, known_head)
+        if why:
+            return VerifyResult(0, start, Flaw(None, f"entry {start[0]} is in the archive; {why}"))
     for row in rows:
-        why = _why_broken(row, head, has_config) or _why_other(row, known_head)
+        why = _why_broken(row, head, has_config)
+        if not why:
+            assert isinstance(row.hash, bytes)
+            why = _why_other((row.seq, row.hash), known_head)
         if why:
             return VerifyResult(entries, head, Flaw(row.seq, why))
         assert isinstance(row.hash, bytes)
@@ -134,10 +145,23 @@ def _why_broken(
     return None
 
 
-def _why_other(row: RawRow, known_head: tuple[int, str] | None) -> str | None:
-    if known_head is None or row.seq != known_head[0]:
+def _why_other(head: tuple[int, bytes], known_head: tuple[int, str] | None) -> str | None:
+    if known_head is None or head[0] != known_head[0]:
         return None
-    assert isinstance(row.hash, bytes)
-    if row.hash.hex().startswith(known_head[1]):
+    if head[1].hex().startswith(known_head[1]):
         return None
-    return f"its hash was once {known_head[1]}, now it is {row.hash.hex()[:16]}"
+    return f"its hash was once {known_head[1]}, now it is {head[1].hex()[:16]}"
+
+
+def check_texts(configs: Mapping[str, bytes]) -> None:
+    """Raise ValueError where a text is not that of the version it is given for."""
+    for version, text in configs.items():
+        if sha256(text).hexdigest() != version:
+            raise ValueError(f"the text is not that of version {version[:16]}")
+
+
+def digest_of(value: object) -> bytes:
+    """Return a hash as the file gives it; a damaged file may give anything."""
+    if isinstance(value, bytes) and len(value) == len(GENESIS):
+        return value
+    raise StoreCorruptError("the hash of an entry is damaged. Verify the log.")

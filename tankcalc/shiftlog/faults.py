@@ -20,6 +20,7 @@ _ROLLBACK = ("SQLITE_READONLY_ROLLBACK", "SQLITE_READONLY_RECOVERY")
 def from_sqlite(name: str, text: str, where: str) -> StoreError:
     """Return the error for SQLite's result code by name, its message and the log's address."""
     family = "_".join(name.split("_")[:2])
+    text = text.rstrip(".")
     if name == _MOVED:
         return StoreUnavailableError(
             f"the log {where} was moved or deleted while it was open; put it back, or start anew."

@@ -13,6 +13,9 @@ from tankcalc.text import clean
 _NETWORK = re.compile(
     r"nfs\d*|cifs|smb\w*|fuse\..*|9p|gpfs|lustre|ceph|afs|glusterfs|beegfs|pvfs2|ocfs2|gfs2"
 )
+_LOCAL = frozenset({"fuse.exfat", "fuse.ext2", "fuse.fuse-overlayfs", "fuse.ntfs-3g"})
+"""Of those that a program serves: known to keep everything on a disk of this machine."""
+
 _OCTAL = re.compile(r"\\([0-7]{3})")
 
 
@@ -37,10 +40,11 @@ def file_system(path: Path, mounts: Path = Path("/proc/mounts")) -> str:
 def refuse_network(path: Path, mounts: Path = Path("/proc/mounts")) -> None:
     """Raise StoreUnavailableError where the path lies on a network file system."""
     kind = file_system(path, mounts)
-    if _NETWORK.fullmatch(kind):
+    if kind not in _LOCAL and _NETWORK.fullmatch(kind):
         raise StoreUnavailableError(
             f"the log {clean(str(path))} lies on a network file system ({kind}), whose locks"
-            " cannot be relied on. Keep the log on a disk of this machine."
+            " cannot be relied on. Keep the log on a disk of this machine, or, for consoles on"
+            " several machines, in PostgreSQL (postgresql://…)."
         )
 
 
@@ -53,16 +57,17 @@ def make_file(path: Path) -> None:
         new_folder = not path.parent.exists()
         path.parent.mkdir(mode=0o700, parents=True, exist_ok=True)
         os.close(os.open(path, os.O_RDWR | os.O_CREAT | os.O_EXCL | os.O_CLOEXEC, 0o600))
-        _settle(path.parent)
+        settle(path.parent)
         if new_folder:
-            _settle(path.parent.parent)
+            settle(path.parent.parent)
     except FileExistsError:
         return
     except OSError as error:
         raise from_os(error, clean(str(path))) from error
 
 
-def _settle(folder: Path) -> None:
+def settle(folder: Path) -> None:
+    """See on disk what files a folder holds."""
     handle = os.open(folder, os.O_RDONLY | os.O_CLOEXEC)
     try:
         os.fsync(handle)

@@ -1,4 +1,7 @@
-"""Entries as both front ends make them: the same facts, gathered once."""
+"""Entries as both front ends make them: the same facts, gathered once.
+
+Readings are here; `make_words` has what people say, `make_corrections` what they take back.
+"""
 
 from __future__ import annotations
 
@@ -11,6 +14,7 @@ from tankcalc import __version__
 from tankcalc.errors import InputError
 from tankcalc.result import as_json
 from tankcalc.shiftlog.entry import Entry
+from tankcalc.shiftlog.kinds import NOTE, READING
 from tankcalc.shiftlog.shifts import shift_at
 from tankcalc.shiftlog.times import zone_named
 from tankcalc.shiftlog.uid import new_uid
@@ -22,6 +26,14 @@ if TYPE_CHECKING:
 
 LONGEST_NOTE = 4000
 LONGEST_NAME = 80
+
+_LONGEST = {
+    "note": LONGEST_NOTE,
+    "reason": LONGEST_NOTE,
+    "who": LONGEST_NAME,
+    "witness": LONGEST_NAME,
+}
+_NAMED = {"who": "name", "witness": "witness's name"}
 
 
 class EntrySite(Protocol):
@@ -56,26 +68,34 @@ def reading_entry(
     note: str = "",
     who: str = "",
     movement: str = "",
+    reason: str = "",
+    rejected: bool = False,
+    witness: str = "",
+    source: str = "",
+    seen: int = 0,
 ) -> Entry:
     """Return the entry of a reading: what was typed, and what it came to.
 
     ``t_us`` is when the reading was taken, ``now_us`` when it is entered; without ``t_us`` they
     are the same. A refused result is kept too: that the instruments contradict the tank is
-    evidence. Make the entry once, and send that same entry again when a store fails.
+    evidence. ``reason`` says why a result in doubt is accepted, or, with ``rejected``, why it is
+    not; ``seen`` is the number of the newest entry it was held against. Make the entry once, and
+    send that same entry again when a store fails.
     """
-    return _entry(
+    if rejected:
+        wanted(reason, "a reading is rejected for a reason")
+    return entry_of(
         site,
         now_us,
         t_us,
-        kind="reading",
-        tank=tank.file or tank.name,
-        fluid=fluid.file or fluid.name,
-        typed=dict(typed),
-        result=as_json(result),
+        kind=READING,
+        **reading_facts(site, tank, fluid, typed, result, reason, rejected=rejected),
         note=note,
         who=who,
-        versions=_versions(site=site.version, tank=tank.version, fluid=fluid.version),
         movement=movement,
+        witness=witness,
+        source=source,
+        seen=seen,
     )
 
 
@@ -91,16 +111,31 @@ def note_entry(
     """Return the entry of a note, about one tank or about none."""
     if not note.strip():
         raise InputError("a note without words is nothing to log.")
-    return _entry(
+    return entry_of(
         site,
         now_us,
         t_us,
-        kind="note",
+        kind=NOTE,
         tank=None if tank is None else tank.file or tank.name,
         note=note,
         who=who,
-        versions=_versions(site=site.version, tank="" if tank is None else tank.version),
+        versions=versions_of(site=site.version, tank="" if tank is None else tank.version),
     )
+
+
+def judgement(status: str, reason: str, *, rejected: bool = False) -> str:
+    """Return what stands in the entry of the operator's judgement of a result.
+
+    Examples
+    --------
+    >>> judgement("good", ""), judgement("check", "dip agrees"), judgement("check", "")
+    ('accepted', 'accepted with reason', '')
+    """
+    if rejected or status == "refused":
+        return "rejected"
+    if status == "good":
+        return "accepted"
+    return "accepted with reason" if reason.strip() else ""
 
 
 def login_name() -> str:
@@ -117,12 +152,39 @@ def console_name() -> str:
     return f"{os.uname().nodename}:{os.getpid()}"
 
 
-def _entry(site: EntrySite, now_us: int, t_us: int | None, **facts: Any) -> Entry:
-    note, who = facts["note"], facts["who"]
-    if len(note) > LONGEST_NOTE:
-        raise InputError(f"the note has {len(note)} characters; {LONGEST_NOTE} is the most.")
-    if len(who) > LONGEST_NAME:
-        raise InputError(f"the name has {len(who)} characters; {LONGEST_NAME} is the most.")
+def reading_facts(
+    site: EntrySite,
+    tank: Tank,
+    fluid: Fluid,
+    typed: Mapping[str, str],
+    result: Result,
+    reason: str,
+    *,
+    rejected: bool,
+) -> dict[str, Any]:
+    """Return the facts of an entry that a reading and its amendment have alike."""
+    from tankcalc.typed import readings_from_text
+
+    readings, _ = readings_from_text(tank, typed)
+    return {
+        "tank": tank.file or tank.name,
+        "fluid": fluid.file or fluid.name,
+        "typed": dict(typed),
+        "result": as_json(result),
+        "signals": dict(readings.signals),
+        "reason": reason,
+        "judgement": judgement(result.status, reason, rejected=rejected),
+        "versions": versions_of(site=site.version, tank=tank.version, fluid=fluid.version),
+    }
+
+
+def entry_of(site: EntrySite, now_us: int, t_us: int | None, **facts: Any) -> Entry:
+    """Return an entry with what every entry has: person, place, instants and shift."""
+    for name, most in _LONGEST.items():
+        size = len(facts.get(name, ""))
+        if size > most:
+            what = _NAMED.get(name, name)
+            raise InputError(f"the {what} has {size} characters; {most} is the most.")
     at_us = now_us if t_us is None else t_us
     shift = shift_at(at_us, zone_named(site.time_zone), site.shifts)
     return Entry(
@@ -140,5 +202,12 @@ def _entry(site: EntrySite, now_us: int, t_us: int | None, **facts: Any) -> Entr
     )
 
 
-def _versions(**versions: str) -> dict[str, str]:
+def wanted(text: str, why: str) -> None:
+    """Raise an InputError where a text is blank."""
+    if not text.strip():
+        raise InputError(f"{why}. Say it in words.")
+
+
+def versions_of(**versions: str) -> dict[str, str]:
+    """Return the versions that there are, by what they are of."""
     return {name: version for name, version in versions.items() if version}

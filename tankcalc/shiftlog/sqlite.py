@@ -14,7 +14,7 @@ from contextlib import closing, contextmanager
 from pathlib import Path
 from typing import Any
 
-from tankcalc.errors import StoreCorruptError, StoreUnavailableError
+from tankcalc.errors import StoreCorruptError, StoreReadOnlyError, StoreUnavailableError
 from tankcalc.shiftlog import schema
 from tankcalc.shiftlog.faults import from_os, from_sqlite
 from tankcalc.shiftlog.files import make_file, refuse_network
@@ -70,6 +70,21 @@ class LogFile:
             with _transaction(db):
                 yield db
 
+    def copy_to(self, path: Path) -> None:
+        """Copy the log as it is at one moment to a new file; others may write meanwhile."""
+        with self._speaking():
+            db = self._for_reading()
+            if db is None:
+                raise StoreUnavailableError(f"there is no log at {self.where}.")
+            with closing(sqlite3.connect(path, isolation_level=None)) as copy:
+                copy.execute("PRAGMA synchronous=EXTRA")
+                db.backup(copy)
+
+    def seal(self) -> None:
+        """Make the log an archive: from now on it takes no new entries, whoever may write it."""
+        with self.writing() as db:
+            db.execute(f"PRAGMA application_id={schema.ARCHIVE_ID}")
+
     def is_there(self) -> bool:
         """Whether there is a log to read."""
         with self._speaking():
@@ -117,6 +132,7 @@ class LogFile:
             mode = db.execute("PRAGMA journal_mode=DELETE").fetchone()[0]
             if mode != "delete":
                 raise StoreUnavailableError(f"the log {self.where} keeps a journal of kind {mode}.")
+            self._refuse_archive(db)
             if self._version(db) < len(schema.STEPS):
                 with _transaction(db):
                     self._build(db)
@@ -127,7 +143,7 @@ class LogFile:
         """Return the number of schema steps the file has taken; 0: it is an empty file."""
         version: int = db.execute("PRAGMA user_version").fetchone()[0]
         application: int = db.execute("PRAGMA application_id").fetchone()[0]
-        if application != schema.APPLICATION_ID:
+        if application not in (schema.APPLICATION_ID, schema.ARCHIVE_ID):
             if application or version or db.execute("SELECT 1 FROM sqlite_master").fetchone():
                 raise StoreCorruptError(f"{self.where} is no log of this program.")
             return 0
@@ -138,6 +154,13 @@ class LogFile:
                 f"the log {self.where} was written by a newer version of this program."
             )
         return version
+
+    def _refuse_archive(self, db: sqlite3.Connection) -> None:
+        if db.execute("PRAGMA application_id").fetchone()[0] == schema.ARCHIVE_ID:
+            raise StoreReadOnlyError(
+                f"{self.where} is an archive: it takes no new entries."
+                " Name the log that goes on from it."
+            )
 
     def _build(self, db: sqlite3.Connection) -> None:
         # Read again inside the transaction: another console may have built it meanwhile.

@@ -2,20 +2,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from hashlib import sha256
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import Any
 
-from tankcalc.errors import StoreCorruptError, StoreError, StoreUnavailableError
-from tankcalc.shiftlog.audit import audit
-from tankcalc.shiftlog.chain import GENESIS, Flaw, VerifyResult, columns, link, tank_column
-from tankcalc.shiftlog.entry import Entry, canonical, decoded
+from tankcalc.errors import StoreCorruptError, StoreUnavailableError
+from tankcalc.shiftlog import schema
+from tankcalc.shiftlog.audit import audit, beginning
+from tankcalc.shiftlog.chain import GENESIS, Flaw, VerifyResult, check_texts, digest_of, tank_column
+from tankcalc.shiftlog.entry import Entry, decoded, shift_text
+from tankcalc.shiftlog.shifts import instants_around
 from tankcalc.shiftlog.sqlite import LogFile, tables_of
-from tankcalc.shiftlog.store import Receipt, Row
-
-if TYPE_CHECKING:
-    import sqlite3
+from tankcalc.shiftlog.sqlite_write import go_on_from, put
+from tankcalc.shiftlog.store import Receipt, Row, ShiftKey
 
 _PAGE = 2000
 """Entries read at a time: a reader holds the lock for one page only, so writers get through."""
@@ -36,56 +36,91 @@ class SqliteStore:
 
     def append(self, entry: Entry, configs: Mapping[str, bytes]) -> Receipt:
         """Put an entry and the texts it rests on at the end, in one transaction."""
-        body = canonical(entry)
-        for version, text in configs.items():
-            if sha256(text).hexdigest() != version:
-                raise ValueError(f"the text is not that of version {version[:16]}")
+        return self.append_many([(entry, configs)])[0]
+
+    def append_many(self, entries: Iterable[tuple[Entry, Mapping[str, bytes]]]) -> list[Receipt]:
+        """Put entries and their texts at the end, in one transaction."""
+        given = list(entries)
+        for _, configs in given:
+            check_texts(configs)
+        if not given:
+            return []
         with self._file.writing() as db:
-            receipt = _receipt(db, entry, body)
-            if receipt is None:
-                _keep(db, entry, configs)
-                receipt = _insert(db, entry, body)
-        return receipt
+            return [put(db, entry, configs) for entry, configs in given]
+
+    def go_on_from(self, head: tuple[int, bytes]) -> None:
+        """Make a new log that follows the head of an archive: its number and its hash."""
+        with self._file.writing() as db:
+            go_on_from(db, head)
+
+    def begins(self) -> tuple[int, bytes]:
+        """Return the number and hash that the first entry follows."""
+        return beginning(self._file.select)
 
     def tail(
-        self, n: int = 500, *, tank: str | None = None, before: int | None = None
+        self,
+        n: int = 500,
+        *,
+        tank: str | None = None,
+        kind: str | None = None,
+        shift: ShiftKey | None = None,
+        before: int | None = None,
     ) -> list[Row]:
         """Return the last entries, newest last."""
-        where, values = _condition({"tank =": tank_column(tank), "seq <": before})
-        rows = self._file.select(f"{_ROW}{where} ORDER BY seq DESC LIMIT ?", (*values, n))
+        terms: dict[str, Any] = {"tank =": tank_column(tank), "kind =": kind, "seq <": before}
+        if shift is not None:
+            # Unary plus keeps SQLite to the index on time: a shift is a short stretch of a log.
+            terms = {f"+{term}": value for term, value in terms.items()}
+            start_us, end_us = instants_around(shift[0])
+            terms |= {"t_us >=": start_us, "t_us <": end_us, "0 < instr(body,": shift_text(shift)}
+        where, values = _condition(terms)
+        order = "seq" if shift is None else "+seq"
+        rows = self._file.select(f"{_ROW}{where} ORDER BY {order} DESC LIMIT ?", (*values, n))
         return [self._row(row) for row in reversed(rows)]
 
     def between(
-        self, start_us: int | None, end_us: int | None, *, tank: str | None = None
+        self,
+        start_us: int | None,
+        end_us: int | None,
+        *,
+        tank: str | None = None,
+        kind: str | None = None,
     ) -> Iterator[Row]:
         """Yield the entries whose reading lies in [start, end), in the order of the log."""
         window = {"t_us >=": start_us, "t_us <": end_us}
-        where, values = _condition(window)
-        # The time index finds the stretch of the log; within it, the numbers give the order.
-        ends = self._file.select(f"SELECT min(seq), max(seq) FROM entry{where}", values)
-        first, last = ends[0] if ends else (None, None)
+        first, last = self._stretch(window)
         while first is not None:
             where, values = _condition(
-                {"seq >=": first, "seq <=": last, "tank =": tank_column(tank), **window}
+                {
+                    "seq >=": first,
+                    "seq <=": last,
+                    "tank =": tank_column(tank),
+                    "kind =": kind,
+                    **window,
+                }
             )
             rows = self._file.select(f"{_ROW}{where} ORDER BY seq LIMIT ?", (*values, _PAGE))
             yield from (self._row(row) for row in rows)
             first = rows[-1][0] + 1 if len(rows) == _PAGE else None
 
     def latest(self) -> dict[str, Row]:
-        """Return for each tank its reading with the latest time."""
-        # Steps from tank to tank through the index: a GROUP BY would read the whole log.
-        rows = self._file.select(
-            "WITH RECURSIVE t(tank) AS ("
-            " SELECT min(tank) FROM entry WHERE kind = 'reading' UNION ALL"
-            " SELECT (SELECT min(tank) FROM entry WHERE kind = 'reading' AND tank > t.tank)"
-            " FROM t WHERE t.tank IS NOT NULL) "
-            f"{_ROW} WHERE seq IN (SELECT (SELECT seq FROM entry"
-            " WHERE kind = 'reading' AND tank = t.tank ORDER BY t_us DESC, seq DESC LIMIT 1)"
-            " FROM t WHERE t.tank IS NOT NULL)"
-        )
+        """Return for each tank the reading with the latest time, as it stands now."""
+        rows = self._file.select(f"{_ROW} WHERE seq IN ({schema.LATEST})")
         found = (self._row(row) for row in rows)
         return {row.entry.tank: row for row in found if row.entry.tank is not None}
+
+    def history(self, uid: bytes) -> list[Row]:
+        """Return an entry's original and everything that refers to it."""
+        rows = self._file.select(f"{_ROW} WHERE seq IN ({schema.HISTORY}) ORDER BY seq", (uid,))
+        return [self._row(row) for row in rows]
+
+    def count(self, *, tank: str | None = None, kind: str | None = None) -> int:
+        """Return how many entries there are."""
+        if tank is None and kind is None:
+            return self.head()[0] - self.begins()[0]
+        where, values = _condition({"tank =": tank_column(tank), "kind =": kind})
+        rows = self._file.select(f"SELECT count(*) FROM entry{where}", values)
+        return int(rows[0][0]) if rows else 0
 
     def get_config(self, version: str) -> bytes:
         """Return the text with that SHA-256 (hex)."""
@@ -102,7 +137,7 @@ class SqliteStore:
     def head(self) -> tuple[int, bytes]:
         """Return the number and hash of the last entry."""
         rows = self._file.select("SELECT seq, hash FROM entry ORDER BY seq DESC LIMIT 1")
-        return (rows[0][0], _digest(rows[0][1])) if rows else (0, GENESIS)
+        return (rows[0][0], digest_of(rows[0][1])) if rows else self.begins()
 
     def verify(self, known_head: tuple[int, str] | None = None) -> VerifyResult:
         """Check chain, texts, columns, guards and the file itself."""
@@ -117,10 +152,20 @@ class SqliteStore:
         """Let go of the file."""
         self._file.close()
 
+    def _stretch(self, window: Mapping[str, Any]) -> tuple[int | None, int | None]:
+        """Return the first and last number in a window of time: within it, numbers give order."""
+        where, values = _condition(window)
+        ends = f"SELECT min(seq), max(seq) FROM entry{where}"
+        if not values:
+            # Each for itself, SQLite finds them at the ends of the table.
+            ends = "SELECT (SELECT min(seq) FROM entry), (SELECT max(seq) FROM entry)"
+        found = self._file.select(ends, values)
+        return (found[0][0], found[0][1]) if found else (None, None)
+
     def _row(self, row: tuple[Any, ...]) -> Row:
         seq, body, digest = row
         try:
-            return Row(seq, decoded(body), _digest(digest))
+            return Row(seq, decoded(body), digest_of(digest))
         except ValueError as error:
             raise StoreCorruptError(
                 f"entry {seq} of the log {self.where} cannot be read: {error}. Verify the log."
@@ -130,49 +175,5 @@ class SqliteStore:
 def _condition(terms: Mapping[str, Any]) -> tuple[str, tuple[Any, ...]]:
     """Return the WHERE of those terms that have a value, and the values."""
     used = {term: value for term, value in terms.items() if value is not None}
-    text = " AND ".join(f"{term} ?" for term in used)
+    text = " AND ".join(f"{term} ?)" if "(" in term else f"{term} ?" for term in used)
     return (f" WHERE {text}" if text else ""), tuple(used.values())
-
-
-def _receipt(db: sqlite3.Connection, entry: Entry, body: bytes) -> Receipt | None:
-    found = db.execute(f"{_ROW} WHERE uid = ?", (entry.uid,)).fetchone()
-    if found is None:
-        return None
-    if found[1] != body:
-        raise StoreError(f"entry {found[0]} has the identifier {entry.id} and other content.")
-    return Receipt(entry.uid, found[0], _digest(found[2]))
-
-
-def _digest(value: object) -> bytes:
-    """Return a hash as the file gives it; a damaged file may give anything."""
-    if isinstance(value, bytes) and len(value) == len(GENESIS):
-        return value
-    raise StoreCorruptError("the hash of an entry is damaged. Verify the log.")
-
-
-def _keep(db: sqlite3.Connection, entry: Entry, configs: Mapping[str, bytes]) -> None:
-    db.executemany(
-        "INSERT OR IGNORE INTO config(hash, body) VALUES (?, ?)",
-        [(bytes.fromhex(version), text) for version, text in configs.items()],
-    )
-    for name, version in entry.versions.items():
-        held = db.execute("SELECT 1 FROM config WHERE hash = ?", (bytes.fromhex(version),))
-        if held.fetchone() is None:
-            raise StoreError(
-                f"the text of the {name} (version {version[:16]}) was not given to the log:"
-                " without it nobody could work the entry out again."
-            )
-
-
-def _insert(db: sqlite3.Connection, entry: Entry, body: bytes) -> Receipt:
-    last = db.execute("SELECT hash FROM entry ORDER BY seq DESC LIMIT 1").fetchone()
-    prev = GENESIS if last is None else _digest(last[0])
-    digest = link(prev, body)
-    values = (*columns(entry), body.decode("ascii"), prev, digest)
-    cursor = db.execute(
-        "INSERT INTO entry(uid, kind, ref, tank, t_us, body, prev, hash)"
-        " VALUES (?, ?, ?, ?, ?, ?, ?, ?)",
-        values,
-    )
-    assert cursor.lastrowid is not None
-    return Receipt(entry.uid, cursor.lastrowid, digest)
