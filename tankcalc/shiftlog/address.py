@@ -70,26 +70,41 @@ def default_log(site_name: str) -> Path:
 
 
 def open_store(address: str | Path) -> Store:
-    """Return the store behind an address: a file, for this version.
+    """Return the store behind an address: a file, or a database of ``postgresql://…``.
 
     Nothing is opened yet: the first call that needs it does, so a log that cannot be reached
     is an error of that call and not of the program's start.
+    """
+    path = log_file(address)
+    if path is None:
+        from tankcalc.shiftlog.postgres_store import PostgresStore
+
+        return PostgresStore(str(address))
+    from tankcalc.shiftlog.sqlite_store import SqliteStore
+
+    return SqliteStore(path)
+
+
+def log_file(address: str | Path) -> Path | None:
+    """Return the file that an address names; None: it names a PostgreSQL database.
+
+    Raises
+    ------
+    StoreUnavailableError
+        It names neither.
     """
     text = str(address)
     scheme = _SCHEME.match(text)
     if scheme:
         kind = scheme[1].lower()
         if kind in ("postgresql", "postgres"):
-            raise StoreUnavailableError(
-                "this version keeps its log in a SQLite file, not in PostgreSQL. Name a file, or"
-                ' write store = "sqlite" under [log] in site.toml.'
-            )
-        raise StoreUnavailableError(f'no log is kept at "{clean(kind)}://". Name a file.')
+            return None
+        raise StoreUnavailableError(
+            f'no log is kept at "{clean(kind)}://". Name a file, or a postgresql:// address.'
+        )
     if "\0" in text:
         raise StoreUnavailableError(f'"{clean(text)}" is no name for a file.')
-    from tankcalc.shiftlog.sqlite_store import SqliteStore
-
-    return SqliteStore(_expanded(text))
+    return _expanded(text)
 
 
 def _expanded(text: str) -> Path:
