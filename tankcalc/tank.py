@@ -91,6 +91,8 @@ class Tank:
         Overrides the vapour of the fluid.
     relief_pa : (float, float) or None
         Vacuum and pressure, gauge, at which the vapour space is relieved, Pa.
+    response_time_s : float or None
+        From the high-high level until a receipt has stopped, s; None: not stated.
     file : str
         Stem of the tank's file; what the command line calls the tank.
     version : str
@@ -114,6 +116,7 @@ class Tank:
     thermometer_elevations_m: tuple[float, ...] = ()
     largest_in_m3_s: float | None = None
     largest_out_m3_s: float | None = None
+    response_time_s: float | None = None
     service: str = ""
     contents: str = ""
     kind: str = ""

@@ -9,10 +9,12 @@ from types import MappingProxyType
 from typing import TYPE_CHECKING, cast
 
 from tankcalc.errors import Problem, ProfileError
+from tankcalc.limits.settings import AlertSettings, RateSettings
+from tankcalc.profiles.crews_schema import Roster
 from tankcalc.profiles.documents import Document
 from tankcalc.profiles.findings import did_you_mean, show
 from tankcalc.profiles.names import SUFFIX, names_in
-from tankcalc.profiles.site_schema import SITE, read_surroundings
+from tankcalc.profiles.site_schema import SITE, check_crews, read_surroundings
 from tankcalc.profiles.where import SITE_FILE
 from tankcalc.surroundings import Surroundings
 from tankcalc.text import clean
@@ -51,6 +53,12 @@ class Site:
         Gravity, outside air and its pressure.
     version : str
         SHA-256 of site.toml, in hex.
+    crews : Roster or None
+        Which crew works each shift, where the site states it.
+    alerts : AlertSettings
+        Dead bands, delays and ages.
+    rates : RateSettings
+        How readings are taken.
     """
 
     folder: Path
@@ -63,6 +71,9 @@ class Site:
     log_store: str | None
     surroundings: Surroundings
     version: str
+    crews: Roster | None = None
+    alerts: AlertSettings = field(default_factory=AlertSettings)
+    rates: RateSettings = field(default_factory=RateSettings)
     _texts: dict[str, bytes] = field(default_factory=dict, repr=False, compare=False)
 
     def tank_names(self) -> list[str]:
@@ -158,6 +169,8 @@ def read_site(document: Document, *, is_demo: bool = False) -> Site | None:
     findings = document.findings
     values = SITE.values(document.data, (), findings)
     around = read_surroundings(values, findings)
+    shifts = values["shifts"] or dict(DEFAULT_SHIFTS)
+    check_crews(values, shifts, findings)
     if around is None or len(findings):
         return None
     folder = document.path.parent
@@ -168,9 +181,12 @@ def read_site(document: Document, *, is_demo: bool = False) -> Site | None:
         place=values["place"],
         time_zone=values["time_zone"],
         units=values["units"],
-        shifts=MappingProxyType(values["shifts"] or dict(DEFAULT_SHIFTS)),
+        shifts=MappingProxyType(shifts),
         log_store=(values["log"] or {}).get("store"),
         surroundings=around,
         version=document.version,
+        crews=values["crews"],
+        alerts=values["alerts"],
+        rates=values["rates"],
         _texts={document.version: document.whole},
     )

@@ -3,12 +3,15 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Mapping
 from dataclasses import replace
 
 from tankcalc.constants import ICE_POINT_K
 from tankcalc.errors import InputError
+from tankcalc.limits.settings import AlertSettings, RateSettings
+from tankcalc.profiles.crews_schema import CREWS
 from tankcalc.profiles.findings import At, Findings, nearest, show
-from tankcalc.profiles.leaves import UnfitError, choice, fraction, leaf, quantity, text
+from tankcalc.profiles.leaves import UnfitError, choice, fraction, leaf, quantity, text, whole
 from tankcalc.profiles.source_schema import SITE_SOURCE
 from tankcalc.profiles.tables import Named, Table, Values, may
 from tankcalc.surroundings import Surroundings, surroundings
@@ -111,6 +114,62 @@ class Shifts:
             findings.add(at, f"begins at {start}, as {show(taken[start])} does.")
 
 
+def _alerts(values: Values, at: At, findings: Findings) -> AlertSettings:
+    usual = AlertSettings()
+    names = {
+        "level_dead_band": "level_dead_band",
+        "pressure_dead_band": "pressure_dead_band",
+        "flow_dead_band": "flow_dead_band",
+        "on_delay": "on_delay_s",
+        "off_delay": "off_delay_s",
+        "stale_after": "stale_after_s",
+        "stuck_after": "stuck_after",
+    }
+    given = {field: values[key] for key, field in names.items() if values[key] is not None}
+    return replace(usual, **given)
+
+
+ALERTS = Table(
+    {
+        "level_dead_band": may(fraction()),
+        "pressure_dead_band": may(fraction()),
+        "flow_dead_band": may(fraction()),
+        "on_delay": may(quantity("time", "not negative")),
+        "off_delay": may(quantity("time", "not negative")),
+        "stale_after": may(quantity("time", "positive")),
+        "stuck_after": may(whole(2, 1000)),
+    },
+    _alerts,
+)
+
+
+def _rates(values: Values, at: At, findings: Findings) -> RateSettings:
+    share = values["random_share"]
+    usual = RateSettings(read_every_s=values["read_every"])
+    return usual if share is None else replace(usual, random_share=share)
+
+
+RATES = Table(
+    {"read_every": may(quantity("time", "positive")), "random_share": may(fraction())}, _rates
+)
+
+
+def check_crews(values: Values, shifts: Mapping[str, str], findings: Findings) -> None:
+    """Note a roster that does not name every shift of the site, or names others."""
+    roster = values["crews"]
+    if roster is None:
+        return
+    for name in roster.crews:
+        if name not in shifts:
+            known = f"Shifts here: {', '.join(shifts)}."
+            findings.add(("crews", "roster", name), "there is no shift of that name.", known)
+    for name in shifts:
+        if name not in roster.crews:
+            findings.add(
+                ("crews", "roster"), f"the shift {show(name)} has no crews.", "Give it a line."
+            )
+
+
 SITE = Table(
     {
         "name": may(text(60)),
@@ -142,6 +201,9 @@ SITE = Table(
         ),
         "standard_temperature": may(quantity("temperature"), STANDARD_K),
         "shifts": may(Shifts()),
+        "crews": may(CREWS),
+        "alerts": may(ALERTS, AlertSettings()),
+        "rates": may(RATES, RateSettings()),
         "log": may(Table({"store": may(leaf(_store))})),
         "sources": may(Named(SITE_SOURCE)),
     }

@@ -7,6 +7,7 @@ from collections.abc import Iterator, Mapping
 from typing import TYPE_CHECKING
 
 from tankcalc.instruments import Transmitter
+from tankcalc.limits.levels import spacing_notices
 from tankcalc.profiles.findings import Findings
 from tankcalc.profiles.tables import Values
 from tankcalc.tank import LIMIT_ORDER, Tank
@@ -116,6 +117,12 @@ def note_doubts(tank: Tank, findings: Findings) -> None:
             findings.add(
                 ("thermometer", "elevations", n), f"{z:g} m is outside the vessel, {_span(vessel)}."
             )
+    for notice in spacing_notices(tank):
+        findings.add(
+            ("limits", notice.reading),
+            notice.message[0].lower() + notice.message[1:],
+            "Common practice; your procedures decide.",
+        )
     _note_load(tank, findings)
     for level_m, volume_m3, expected in _mistyped(tank):
         findings.add(

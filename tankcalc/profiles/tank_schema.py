@@ -33,7 +33,12 @@ TANK = Table(
         "shape": need(SHAPE),
         "shell": may(SHELL),
         "transmitters": may(Loose(TRANSMITTERS)),
-        "limits": may(Table({name: may(quantity("length")) for name in LIMIT_ORDER})),
+        "limits": may(
+            Table(
+                {name: may(quantity("length")) for name in LIMIT_ORDER}
+                | {"response_time": may(quantity("time", "positive"))}
+            )
+        ),
         "deadwood": may(DEADWOOD),
         "floating_roof": may(FLOATING_ROOF),
         "table": may(CERTIFICATE),
@@ -56,7 +61,8 @@ def read_tank(document: Document, surroundings: Surroundings) -> Tank | None:
     bare = None if made is None else made.vessel
     vessel = None if bare is None else _with_deadwood(bare, values["deadwood"], findings)
     transmitters = _transmitters(values)
-    limits = {name: z for name, z in (values["limits"] or {}).items() if z is not None}
+    given = values["limits"] or {}
+    limits = {name: given[name] for name in LIMIT_ORDER if given.get(name) is not None}
     check_limits(limits, bare, findings)
     check_elevations(transmitters, bare, findings)
     check_shell(values, findings)
@@ -110,6 +116,7 @@ def _fitted(values: Values, made: Shaped) -> dict[str, Any]:
         "thermometer_elevations_m": thermometer.get("elevations", ()),
         "largest_in_m3_s": flow.get("largest_in"),
         "largest_out_m3_s": flow.get("largest_out"),
+        "response_time_s": (values["limits"] or {}).get("response_time"),
         "service": values["service"],
         "contents": values["contents"],
     }
