@@ -15,6 +15,7 @@ from tanks import single, upright
 from tankcalc.gauging import evaluate
 from tankcalc.readings import Readings
 from tankcalc.report import rows
+from tankcalc.shiftlog import Row
 from tankcalc.shiftlog.entry import Entry
 from tankcalc.tui import present
 from tankcalc.tui.ascii import columns, to_ascii
@@ -24,6 +25,7 @@ from tankcalc.tui.desk import Entry as Typed
 from tankcalc.tui.fields import FIELDS, NOTE, READINGS, fields_of, takes
 from tankcalc.tui.help_text import help_lines
 from tankcalc.tui.log_lines import clock, log_row
+from tankcalc.tui.log_pages import Seen
 from tankcalc.tui.present import Line, figure
 from tankcalc.tui.scene import bands, labels
 from tankcalc.typed import NAMES
@@ -97,7 +99,7 @@ def test_nothing_from_outside_reaches_the_screen_as_it_came() -> None:
         present.header(HOSTILE, True, ["metric"], 80),
         present.tank_line(HOSTILE, "+", True, True, 30),
         *present.log_subject(answer, [], HOSTILE, HOSTILE, 60),
-        log_row(entry(note=HOSTILE, who=HOSTILE, tank=HOSTILE), ZONE, "metric", 80),
+        log_row(seen(note=HOSTILE, who=HOSTILE, tank=HOSTILE), ZONE, "metric", 80),
     ]
     assert all(ch.isprintable() for line in lines for text, _ in line for ch in text)
     assert "[bold][/]" in words(lines), "markup is shown, not followed"
@@ -127,18 +129,23 @@ def entry(**changes: object) -> Entry:
     return Entry(**(stated | changes))  # type: ignore[arg-type]
 
 
+def seen(**changes: object) -> Seen:
+    row = Row(1, entry(**changes), bytes(32))
+    return Seen(row, (row,))
+
+
 def test_a_log_row_tells_local_time_tank_level_mass_status_who_and_note() -> None:
-    row = words([log_row(entry(note="valve V3 shut"), ZONE, "metric", 80)])
+    row = words([log_row(seen(note="valve V3 shut"), ZONE, "metric", 80)])
     assert row.split() == [
         *("02:30", "V-1", "6.005", "m", "1603.000", "t", "CHECK", "JD", "valve", "V3", "shut")
     ]
 
 
 def test_a_note_and_a_refused_reading_have_rows_without_figures() -> None:
-    note = words([log_row(entry(kind="note", result=None, note="gauge stuck"), ZONE, "us", 80)])
+    note = words([log_row(seen(kind="note", result=None, note="gauge stuck"), ZONE, "us", 80)])
     assert "note  JD gauge stuck" in note
     empty = {"level_m": None, "mass_kg": None, "status": "refused"}
-    refused = words([log_row(entry(result=empty), ZONE, "us", 80)])
+    refused = words([log_row(seen(result=empty), ZONE, "us", 80)])
     assert "REFUSED" in refused
     assert columns(refused) <= 80
 
@@ -237,3 +244,15 @@ def test_a_unit_of_two_words_is_left_out_whole() -> None:
 def test_the_help_is_said_to_hold_what_the_footer_has_no_room_for() -> None:
     assert footer(80)[0] == ("F1", "help: all")
     assert footer(500)[0] == ("F1", "help")
+
+
+def test_keys_of_the_log_pane_stand_two_spaces_apart_and_fit() -> None:
+    foot = words([present.pane_foot()])
+    assert foot.startswith("Enter open  a amend  w withdraw  / filter")
+    assert len(foot) <= 80
+
+
+def test_the_help_tells_the_mark_of_an_acknowledged_alert_from_the_tank_in_front() -> None:
+    text = words(help_lines(80))
+    assert "= acknowledged" in text
+    assert "! = ~ -" in text

@@ -329,6 +329,8 @@ def test_a_refused_reading_is_logged_as_evidence(tmp_path: Path) -> None:
         await console.wait("with no figures")
         await console.type("JD")
         await console.press("enter")
+        await console.wait("Why is it logged all the same?")
+        await console.press("enter")
         await console.wait("SAVED")
         await console.wait("REFUSED JD")
 

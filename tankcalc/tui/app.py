@@ -26,6 +26,7 @@ from tankcalc.tui.front import Front, now_us
 from tankcalc.tui.keys import Arrived, KeyLine
 from tankcalc.tui.screens.main import MainScreen
 from tankcalc.tui.theme import THEME, AsciiOnly
+from tankcalc.tui.watching import Watching
 
 if TYPE_CHECKING:
     from tankcalc.tui.logbook import LogBook
@@ -46,6 +47,11 @@ class Options:
     units: System | None = None
     ascii: bool = False
 
+    @property
+    def place(self) -> str:
+        """The site, and the log where another than the site's is chosen: drafts belong to both."""
+        return str(self.folder) if self.log is None else f"{self.folder} with {self.log}"
+
 
 class ConsoleApp(App[None]):
     """Wires the desk, the drafts, the log and the screens together."""
@@ -62,10 +68,12 @@ class ConsoleApp(App[None]):
         super().__init__(ansi_color=True)
         self.options = options
         self.desk = Desk(engine.tank_names(options.folder), options.units)
-        self.drafts = Drafts(options.state, str(options.folder))
+        self.drafts = Drafts(options.state, options.place)
         self.book: LogBook | None = None
         self.main = MainScreen(self.desk)
         self.front = Front(self)
+        self.watching = Watching(self)
+        self.watching.after(self.front.show_alerts)
         self._keys = KeyLine(super().on_event, lambda: self.focused or self.screen)
         self.register_theme(THEME)
         self.theme = THEME.name
@@ -130,6 +138,7 @@ class ConsoleApp(App[None]):
         self.desk.open(message.site)
         try:
             self.book = LogBook.of(message.site, self.options.log)
+            self.front.open_log(self.book)
         except TankcalcError as error:
             self.front.log_trouble = f"No log: {error}"
         self.front.tick()

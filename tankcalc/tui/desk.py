@@ -74,6 +74,14 @@ class Answer:
         return {*self.tank.transmitters, *({"dp"} if self.tank.dp is not None else ())}
 
 
+@dataclass(frozen=True, slots=True)
+class Kept:
+    """What a dialog that was left had asked so far, and what it had sent and not saved."""
+
+    answers: Mapping[str, str] = field(default_factory=dict)
+    sent: Unsaved | None = None
+
+
 @dataclass(slots=True)
 class Entry:
     """What was typed for one tank, and the density profile chosen for it.
@@ -116,6 +124,7 @@ class Desk:
         self.who = ""
         self.trouble = ""
         self.broken: dict[str, str] = {}
+        self.kept: dict[str, Kept] = {}
         self._tanks: dict[str, Tank] = {}
         self._fluids: dict[tuple[str, str], Fluid] = {}
         self._entries: dict[str, Entry] = {}
@@ -155,6 +164,16 @@ class Desk:
         """Tanks for which something was typed and not logged."""
         return {name for name, entry in self._entries.items() if entry.fields}
 
+    @property
+    def left(self) -> list[str]:
+        """What was typed into a dialog that was left, and not sent to the log."""
+        return [name for name, kept in self.kept.items() if kept.sent is None]
+
+    @property
+    def unsaved(self) -> list[str]:
+        """What was sent to the log from a dialog and not saved; a reading is kept on disk."""
+        return [name for name, kept in self.kept.items() if kept.sent is not None]
+
     def next_units(self) -> None:
         """Show the next system of units."""
         self.units = SYSTEMS[(SYSTEMS.index(self.units) + 1) % len(SYSTEMS)]
@@ -174,7 +193,7 @@ class Desk:
             fluid = self._fluid(self.site, tank)
         except TankcalcError as error:
             return Answer(tank, typed=typed, why=str(error))
-        return _answer(tank, fluid, typed)
+        return answer_of(tank, fluid, typed)
 
     def _tank(self, site: Site, name: str) -> Tank:
         """Return a tank as it was read; one that could not be read is tried again each time."""
@@ -191,7 +210,7 @@ class Desk:
         return self._fluids[tank.file, chosen]
 
 
-def _answer(tank: Tank, fluid: Fluid, typed: Mapping[str, str]) -> Answer:
+def answer_of(tank: Tank, fluid: Fluid, typed: Mapping[str, str]) -> Answer:
     """Return what these readings say of this tank."""
     from tankcalc.gauging import evaluate
     from tankcalc.typed import readings_from_text

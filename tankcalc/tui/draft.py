@@ -34,6 +34,12 @@ class Draft:
         Fields as typed; empty when the entry was logged or cleared.
     at_us : int
         When it was last touched, µs of UTC.
+    of : str
+        The dialog it was typed into, such as "note on T-101"; empty: the form of readings.
+    sent : str
+        Canonical bytes of the entry that was sent and not saved; empty: none was sent.
+    texts : mapping of str to bytes
+        Texts of the profiles that entry rests on, by version.
     """
 
     site: str
@@ -41,6 +47,9 @@ class Draft:
     fluid: str = ""
     typed: Mapping[str, str] = field(default_factory=dict)
     at_us: int = 0
+    of: str = ""
+    sent: str = ""
+    texts: Mapping[str, bytes] = field(default_factory=dict)
 
 
 def state_folder(environ: Mapping[str, str]) -> Path:
@@ -64,13 +73,13 @@ class Journal:
         fcntl.flock(self._fd, fcntl.LOCK_EX | fcntl.LOCK_NB)
         self.path = folder / f"{name}.jsonl"
         new.rename(self.path)
-        self._open: dict[tuple[str, str], Draft] = {}
+        self._open: dict[tuple[str, str, str], Draft] = {}
 
     def keep(self, draft: Draft) -> None:
         """Write a draft; it survives the end of this process from here on."""
         line = json.dumps(_as_data(draft), separators=(",", ":")) + "\n"
         os.write(self._fd, line.encode("ascii"))
-        self._open[draft.site, draft.tank] = draft
+        self._open[draft.site, draft.tank, draft.of] = draft
         if not any(kept.typed for kept in self._open.values()):
             os.ftruncate(self._fd, 0)
 
@@ -131,12 +140,12 @@ def _lock(fd: int) -> bool:
 
 def _last_of_each(fd: int) -> Iterator[Draft]:
     """Yield the last state of each tank that still holds something."""
-    last: dict[tuple[str, str], Draft] = {}
+    last: dict[tuple[str, str, str], Draft] = {}
     data = os.pread(fd, os.fstat(fd).st_size, 0)
     for line in data.decode("utf-8", "replace").splitlines():
         draft = _as_draft(line)
         if draft is not None:
-            last[draft.site, draft.tank] = draft
+            last[draft.site, draft.tank, draft.of] = draft
     yield from (draft for draft in last.values() if draft.typed)
 
 
@@ -147,6 +156,10 @@ def _as_data(draft: Draft) -> dict[str, Any]:
         "fluid": draft.fluid,
         "typed": dict(draft.typed),
         "at_us": draft.at_us,
+        "of": draft.of,
+        "sent": draft.sent,
+        # Latin-1 takes every byte there and back.
+        "texts": {version: text.decode("latin-1") for version, text in draft.texts.items()},
     }
 
 
@@ -154,9 +167,17 @@ def _as_draft(line: str) -> Draft | None:
     """Return the draft a line holds; None for a line that was cut short."""
     try:
         data = json.loads(line)
+        texts = {str(v): str(text).encode("latin-1") for v, text in data.get("texts", {}).items()}
         typed = {str(name): str(text) for name, text in data["typed"].items()}
         return Draft(
-            str(data["site"]), str(data["tank"]), str(data["fluid"]), typed, int(data["at_us"])
+            str(data["site"]),
+            str(data["tank"]),
+            str(data["fluid"]),
+            typed,
+            int(data["at_us"]),
+            str(data.get("of", "")),
+            str(data.get("sent", "")),
+            texts,
         )
     except (ValueError, KeyError, TypeError, AttributeError):
         return None

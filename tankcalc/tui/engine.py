@@ -53,7 +53,7 @@ def _site(folder: Path, is_demo: bool) -> Site:
     import tankcalc.report
     import tankcalc.shiftlog
     import tankcalc.tui.actions
-    import tankcalc.tui.log_lines
+    import tankcalc.tui.log_front
     import tankcalc.tui.scene
     import tankcalc.typed  # noqa: F401
     from tankcalc.profiles import load_site

@@ -2,23 +2,27 @@
 
 from __future__ import annotations
 
+import os
 import time
 from collections.abc import Sequence
-from dataclasses import replace
 from typing import TYPE_CHECKING
 
-from tankcalc.errors import StoreError
 from tankcalc.tui.defects import note_defect
 from tankcalc.tui.desk import Answer
-from tankcalc.tui.present import CAUTION, units_word, wrapped
+from tankcalc.tui.present import units_word
+from tankcalc.tui.work import begin
 
 if TYPE_CHECKING:
     from textual.timer import Timer
 
+    from tankcalc.profiles import Site
     from tankcalc.report import Row
-    from tankcalc.shiftlog import Row as LogRow
     from tankcalc.tui.app import ConsoleApp
+    from tankcalc.tui.log_front import LogFront
+    from tankcalc.tui.logbook import LogBook
 
+
+READ_ONLY = "LOG IS READ-ONLY: nothing can be saved"
 
 WEIGH_AFTER_S = 0.15
 """How long the keys must rest before the uncertainty is worked out: the figures come first."""
@@ -33,9 +37,9 @@ class Front:
         self.rows: Sequence[Row] = ()
         self.log_trouble = ""
         self._said = ""
+        self._read_only = False
         self._weighing: Timer | None = None
-        self._entries: Sequence[LogRow] = ()
-        self._recent: Sequence[LogRow] = ()
+        self.log: LogFront | None = None
 
     def show_answer(self, said: str = "") -> None:
         """Work out what the readings say, and show it; nothing older stays."""
@@ -46,7 +50,8 @@ class Front:
             where = note_defect(self._app.options.state, error)
             self.answer = Answer(why=f"This program failed; no figure is shown. {where}")
             self.rows = ()
-        self._said = said or self._app.drafts.trouble
+        troubles = [READ_ONLY if self._read_only else "", self._app.drafts.trouble]
+        self._said = said or ". ".join(filter(None, troubles))
         self._app.main.answer(self.answer, self.rows, self._said)
         if self._weighing is not None:
             self._weighing.stop()
@@ -58,18 +63,6 @@ class Front:
         self.answer = self.answer.weighed()
         self.rows = self._figures()
         self._app.main.answer(self.answer, self.rows, self._said)
-
-    def checked(self, at_us: int) -> Answer:
-        """Return the answer with its uncertainty, held against the earlier readings in the log."""
-        answer = self.answer.weighed()
-        if answer.result is None or answer.tank is None or answer.fluid is None:
-            return answer
-        from tankcalc.shiftlog import held_against_log
-
-        result = held_against_log(
-            answer.result, self._recent, answer.tank, answer.fluid, answer.typed, at_us
-        )
-        return replace(answer, result=result)
 
     def bring_tank(self) -> None:
         """Show another tank, with what was typed for it."""
@@ -97,25 +90,36 @@ class Front:
         right = [units_word(app.desk.units), app.book.shift(now).name, clock(now, app.book.zone)]
         return app.main.header(app.book.site.name, app.options.is_demo, right)
 
-    def show_log(self) -> None:
-        """Show the entries of this shift as they were read last."""
-        app = self._app
-        if app.book is None or self.log_trouble:
-            trouble = self.log_trouble
-            return app.main.log_pane.update(
-                lambda width: wrapped(trouble, "refused", width), 0, "LOG", CAUTION
-            )
-        from tankcalc.tui.log_lines import log_rows, log_title
+    def open_log(self, book: LogBook) -> None:
+        """Show a log from now on; what it holds is read when it is next looked at."""
+        from tankcalc.tui.log_front import LogFront
 
-        entries, zone, units = self._entries, app.book.zone, app.desk.units
-        title = log_title(app.book.shift(now_us()), zone, len(entries))
-        return app.main.log_pane.update(
-            lambda width: log_rows(entries, zone, units, width), len(entries), title, CAUTION
+        self.log = LogFront(self._app, book)
+        self._read_only = is_read_only(self._app.options.log, book.site)
+        self._app.main.log_pane.open(self.log)
+
+    def show_log(self) -> None:
+        """Show the log as it was read last, or why there is none."""
+        if self.log is None:
+            self._app.main.log_pane.fail(self.log_trouble)
+        else:
+            self.log.show()
+
+    def show_alerts(self) -> None:
+        """Show which tanks have alerts, as they were found last."""
+        from tankcalc.tui.alerts_present import main_line, marks_of
+
+        app, watching = self._app, self._app.watching
+        app.main.alert(
+            marks_of(watching.found),
+            lambda key, width: main_line(
+                watching.found, watching.trouble, app.desk.tank_name, key, width
+            ),
         )
 
     def read_log(self) -> None:
-        """Read this shift's entries again; other consoles write to the log as well."""
-        self._app.run_worker(self._read_log(), exclusive=True, group="log")
+        """Read what is new in the log; other consoles write to it as well."""
+        begin(self._app, self._read_log, "log")
 
     def tick(self) -> None:
         """Show the minute that has begun; nothing is sent in between."""
@@ -124,14 +128,11 @@ class Front:
         self._app.set_timer(60.02 - time.time() % 60.0, self.tick)
 
     async def _read_log(self) -> None:
-        if self._app.book is not None:
-            try:
-                self._entries = await self._app.book.entries(self._app.book.shift(now_us()))
-                self._recent = await self._app.book.recent()
-                self.log_trouble = ""
-            except StoreError as error:
-                self.log_trouble = f"The log cannot be read: {error}"
-        self.show_log()
+        if self.log is not None:
+            await self.log.read(now_us())
+        else:
+            self.show_log()
+        self._app.watching.look()
 
     def _figures(self) -> Sequence[Row]:
         if self.answer.result is None or self.answer.result.status == "refused":
@@ -139,6 +140,19 @@ class Front:
         from tankcalc.report import rows
 
         return rows(self.answer.result, self._app.desk.units)
+
+
+def is_read_only(option: str | None, site: Site) -> bool:
+    """Return whether the log is a file that exists and that cannot be written here.
+
+    A file whose folder cannot be written counts: SQLite keeps its journal beside the file.
+    """
+    from tankcalc.shiftlog.address import log_address, log_file
+
+    path = log_file(log_address(option, site))
+    if path is None or not os.access(path, os.F_OK):
+        return False
+    return not (os.access(path, os.W_OK) and os.access(path.parent, os.W_OK))
 
 
 def now_us() -> int:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from tankcalc.tui.commands import COMMANDS, MOVES
+from tankcalc.tui.commands import COMMANDS, MOVES, PANE_COMMANDS
 from tankcalc.tui.fields import FIELDS, NOTE, by_name, takes
 from tankcalc.tui.present import Line, wrapped
 
@@ -13,6 +13,15 @@ CAUTIONS = (
     "that is wrong. Compare with a dip.",
     "No warning does not mean safe. The drawing is a guide; the figures count.",
 )
+
+MARKS = (
+    ("AMENDED by 12", "entry 12 stands for it now; WITHDRAWN by 12: entry 12 took it back"),
+    ("amends 5", "it stands for entry 5"),
+    ("LATE", "entered more than a quarter of an hour after it was read"),
+    ("REFUSED, REJECTED", "no honest answer; not believed by whoever logged it"),
+    ("CLOCK STEP", "this machine's clock was set; times across it do not compare"),
+)
+"""Words that stand before an entry of the log, and what they mean."""
 
 
 def help_lines(width: int, field: str = "") -> list[Line]:
@@ -26,6 +35,11 @@ def help_lines(width: int, field: str = "") -> list[Line]:
         lines += _pair(key, f"{command.label}: {command.help}", 18, width)
     for keys, words in MOVES:
         lines += _pair(keys, words, 18, width)
+    lines += [[], *_heading("IN THE LOG (F7 goes there)")]
+    for act in PANE_COMMANDS:
+        lines += _pair(act.shown_key, f"{act.label}: {act.help}", 18, width)
+    for keys, words in MARKS:
+        lines += _pair(keys, words, 18, width)
     lines += [[], *_heading("FIELDS: a number with its unit, always")]
     for one in FIELDS:
         lines += _pair(one.label, takes(one.name), 14, width)
@@ -33,6 +47,8 @@ def help_lines(width: int, field: str = "") -> list[Line]:
     lines += _pair(
         "> * + !", "where the keys go; tank in front; unfinished entry; bad file", 14, width
     )
+    words = "before a tank: alerts: ! raised, = acknowledged, ~ set aside, - ended; Ctrl+G lists"
+    lines += _pair("! = ~ -", words, 14, width)
     lines += _pair("X", "this cannot be used; the words below say why", 14, width)
     lines += [[], *_heading("CAUTION")]
     for caution in CAUTIONS:

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 
 from tankcalc.text import clean
 from tankcalc.tui.ascii import columns
-from tankcalc.tui.commands import footer
+from tankcalc.tui.commands import footer, pane_footer
 from tankcalc.tui.fields import NOTE, label_of
 
 if TYPE_CHECKING:
@@ -23,6 +23,9 @@ Span = tuple[str, str]
 Line = list[Span]
 
 CAUTION = "calculates only; not a safety function"
+
+NOT_LOOKED = "? ALERTS: not looked at yet"
+"""Said until the first look is done: nothing found yet is not the same as no alerts."""
 
 STATUS_WORDS: dict[Status, str] = {
     "good": "* GOOD",
@@ -156,9 +159,18 @@ def not_allowed(field: str) -> str:
 
 def foot(width: int, letters: bool) -> Line:
     """Return the row of keys."""
+    return _key_row(footer(width, letters))
+
+
+def pane_foot() -> Line:
+    """Return the row of keys while they go to the log pane."""
+    return _key_row(pane_footer(), gap="  ")
+
+
+def _key_row(pairs: Sequence[tuple[str, str]], gap: str = " ") -> Line:
     line: Line = []
-    for key, label in footer(width, letters):
-        line.extend([(key, "key"), (f" {label} ", "bar"), ("", "")])
+    for key, label in pairs:
+        line.extend([(key, "key"), (f" {label}{gap}", "bar"), ("", "")])
     return line
 
 
@@ -193,12 +205,22 @@ def clip(text: str, width: int, more: str = "~") -> str:
     return (kept + more)[: max(width, 0)]
 
 
-def tank_line(name: str, mark: str, chosen: bool, focused: bool, width: int) -> Line:
-    """Return one row of the list of tanks; ">" is where the keys go, "*" the tank in front."""
-    lead = ">" if focused else "*" if chosen else " "
+def tank_line(
+    name: str, mark: str, chosen: bool, focused: bool, width: int, alert: tuple[str, str] = ("", "")
+) -> Line:
+    """Return one row of the list of tanks; ">" is where the keys go, "*" the tank in front.
+
+    ``alert`` is a symbol and a word; the word gives way to the name.
+    """
+    symbol, word = alert
+    lead = (">" if focused else "*" if chosen else " ") + (symbol or " ")
     room = max(width - 4, 1)
     shown = clip(clean(name), room)
-    text = f"{lead} {shown}{' ' * (room - columns(shown))}{mark} "
+    free = room - columns(shown)
+    if word and free >= len(word):
+        text = f"{lead}{shown}{mark}{word:>{free}} "
+    else:
+        text = f"{lead}{shown}{' ' * free}{mark} "
     return [(text, "focus" if focused else "key" if chosen else "")]
 
 

@@ -7,7 +7,8 @@ from typing import ClassVar
 
 from textual.binding import Binding, BindingType
 
-from tankcalc.tui.present import Line
+from tankcalc.text import clean
+from tankcalc.tui.present import Line, wrapped
 from tankcalc.tui.screens.dialog import Dialog
 
 
@@ -21,16 +22,23 @@ class AskQuit(Dialog[bool]):
     TITLE_TEXT = "LEAVE THE CONSOLE?"
     KEYS_TEXT = "Enter leaves   Esc stays"
 
-    def __init__(self, unfinished: Sequence[str]) -> None:
+    def __init__(self, unfinished: Sequence[str], unsaved: Sequence[str] = ()) -> None:
         super().__init__()
-        self._unfinished = unfinished
+        self._unfinished, self._unsaved = unfinished, unsaved
 
     def text(self) -> list[Line]:
-        """Say what becomes of an unfinished entry."""
-        if not self._unfinished:
-            return [[("Everything typed was logged or cleared.", "")]]
-        names = ", ".join(self._unfinished)
-        return [[(f"Not logged: {names}. It is kept, and offered at the next start.", "key")]]
+        """Say what becomes of what is not in the log."""
+        width = self.size.width - 2
+        lines: list[Line] = []
+        if self._unsaved:
+            words = f"NOT SAVED: {clean(', '.join(self._unsaved), 400)}. What was typed is kept; "
+            words += "it may be in the log already: look there before it is logged again."
+            lines += wrapped(words, "refused", width)
+        if self._unfinished:
+            names = ", ".join(self._unfinished)
+            words = f"Not logged: {clean(names, 400)}. It is kept, and offered at the next start."
+            lines += wrapped(words, "key", width)
+        return lines or [[("Everything typed was logged or cleared.", "")]]
 
     def action_answer(self, yes: bool) -> None:
         """Close with the answer."""

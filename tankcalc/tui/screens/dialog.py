@@ -14,9 +14,6 @@ from tankcalc.tui.widgets.lines import Lines
 
 T = TypeVar("T")
 
-OTHER_ROWS = 4
-"""Title, keys, and the most fields a dialog has."""
-
 
 class Dialog(ModalScreen[T], Generic[T]):
     """A box over the foot of the screen; what lies above it stays in sight."""
@@ -30,6 +27,11 @@ class Dialog(ModalScreen[T], Generic[T]):
 
     TITLE_TEXT = ""
     KEYS_TEXT = ""
+
+    @property
+    def other_rows(self) -> int:
+        """Rows that are no text: title, keys, and room for a few fields."""
+        return 5
 
     def compose(self) -> ComposeResult:
         """Lay out title, text, fields and keys."""
@@ -59,7 +61,7 @@ class Dialog(ModalScreen[T], Generic[T]):
 
     def say(self, lines: Sequence[Line]) -> None:
         """Show these lines, as many as leave room for what can be typed and the keys."""
-        room = max(self.size.height - OTHER_ROWS, 1)
+        room = max(self.size.height - self.other_rows, 1)
         shown = list(lines)
         if len(shown) > room:
             shown = [*shown[: room - 1], [(f"(+{len(shown) - room + 1} more lines)", "key")]]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Mapping, Sequence
 from typing import TYPE_CHECKING, ClassVar
 
 from textual import events
@@ -29,6 +29,9 @@ if TYPE_CHECKING:
 
 LEAST_WIDTH, LEAST_HEIGHT = 80, 24
 
+AlertLine = Callable[[str, int], "list[Line]"]
+"""Makes the row about alerts, none or one, from the key that opens them and a width."""
+
 
 class MainScreen(Screen[None]):
     """Lays out the parts, shows answers in them, and passes the operator's wishes on."""
@@ -36,9 +39,11 @@ class MainScreen(Screen[None]):
     AUTO_FOCUS = "#p1"
     BINDINGS: ClassVar[list[BindingType]] = [
         *(
-            Binding(command.keys, f"give('{command.id}')", command.label, show=False, id=command.id)
-            for command in COMMANDS
+            # A field takes some keys held with Ctrl for itself.
+            Binding(c.key, f"give('{c.id}')", c.label, show=False, id=c.id, priority=c.is_chord)
+            for c in COMMANDS
         ),
+        *(Binding(c.letter_key, f"give('{c.id}')", c.label, show=False) for c in COMMANDS),
         Binding("escape", "leave_field", show=False),
         Binding("pageup", "page_log(-1)", show=False),
         Binding("pagedown", "page_log(1)", show=False),
@@ -46,7 +51,7 @@ class MainScreen(Screen[None]):
 
     def __init__(self, desk: Desk) -> None:
         # The classes of the smallest screen, so that it need not be styled twice at start.
-        super().__init__(classes="-narrow -short")
+        super().__init__(classes="-narrow -short -alerts")
         self.HORIZONTAL_BREAKPOINTS = [(0, "-narrow"), (100, "-wide")]
         self.VERTICAL_BREAKPOINTS = [(0, "-short"), (30, "-tall")]
         self._desk = desk
@@ -54,6 +59,7 @@ class MainScreen(Screen[None]):
         self._rows: Sequence[Row] = ()
         self._said = ""
         self._top: tuple[str, bool, Sequence[str]] = ("tankcalc", False, ())
+        self._alert_line: AlertLine = lambda _key, _width: [[(present.NOT_LOOKED, "check")]]
         self._overlay: Lines | None = None
 
     def compose(self) -> ComposeResult:
@@ -66,6 +72,7 @@ class MainScreen(Screen[None]):
                 yield Lines(self._readings_title, id="readings-title")
                 yield EntryForm(id="entry")
                 yield Lines(self._result, id="result")
+        yield Lines(self._alerts, id="alerts")
         yield Lines(self._messages, id="messages")
         yield LogPane(id="log")
         yield Lines(self._foot, id="foot")
@@ -90,6 +97,7 @@ class MainScreen(Screen[None]):
         desk = self._desk
         tanks = self.query_one(TankList)
         tanks.update(desk.tank_names, desk.tank_name, desk.unfinished, desk.broken)
+        self._rebuild("#alerts")
 
     def answer(self, answer: Answer, rows: Sequence[Row], said: str = "") -> None:
         """Show an answer everywhere; what the last one showed is gone."""
@@ -98,6 +106,13 @@ class MainScreen(Screen[None]):
         self.form.mark(answer.problems)
         self._rebuild("#result", "#messages")
         self._cover_if_small()
+
+    def alert(self, marks: Mapping[str, tuple[str, str]], line: AlertLine) -> None:
+        """Mark the tanks that have alerts; the row about them is there while there are any."""
+        self.query_one(TankList).alert(marks)
+        self._alert_line = line
+        self.set_class(bool(line("", self.size.width)), "-alerts")
+        self._rebuild("#alerts")
 
     def say(self, words: str) -> None:
         """Say something above the warnings."""
@@ -138,7 +153,8 @@ class MainScreen(Screen[None]):
         self.say(present.not_allowed(message.name))
 
     def on_descendant_focus(self, _event: events.DescendantFocus) -> None:
-        """Show which keys act now, and what the field takes."""
+        """Show which keys act now, and what the field takes; whoever reads the log needs room."""
+        self.set_class(self.focused is self.log_pane, "-reading")
         self._rebuild("#foot", "#messages")
 
     def on_key(self, event: events.Key) -> None:
@@ -173,7 +189,12 @@ class MainScreen(Screen[None]):
     def _messages(self, width: int, height: int) -> list[Line]:
         return present.messages(self._answer, self._said, self._hint, width - 1, height)
 
+    def _alerts(self, width: int, _height: int) -> list[Line]:
+        return self._alert_line("Ctrl+G", width)
+
     def _foot(self, width: int, _height: int) -> list[Line]:
+        if self.focused is self.log_pane:
+            return [present.pane_foot()]
         return [present.foot(width, not self._typing)]
 
     def _too_small(self, width: int, height: int) -> list[Line]:

@@ -35,6 +35,7 @@ class ReadScreen(Dialog[None]):
         self.TITLE_TEXT = title
         self._lines = lines
         self._first = 0
+        self.below = ""
 
     def text(self) -> list[Line]:
         """Return all of it, broken to the width of the screen."""
@@ -47,8 +48,8 @@ class ReadScreen(Dialog[None]):
         below = max(len(lines) - self._first - room, 0)
         shown = list(lines)[self._first : self._first + room]
         self.query_one("#text", Lines).show(shown)
-        more = f"{below} more rows: Down, PgDn" if below else "end of text"
-        self.keys(f"{self.ACTS}   {more}")
+        self.below = f"{below} more rows: Down, PgDn" if below else "end of text"
+        self.keys(f"{self.ACTS}   {self.below}")
 
     def action_move(self, by: int) -> None:
         """Move by rows."""

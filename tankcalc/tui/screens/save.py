@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 from abc import abstractmethod
-from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, ClassVar
 
 from textual.app import ComposeResult
@@ -13,33 +13,52 @@ from textual.containers import Horizontal, Vertical
 from textual.widgets import Input
 
 from tankcalc.errors import InputError, StoreError
+from tankcalc.tui.asks import Answers, Ask, MissingError
 from tankcalc.tui.logbook import Unsaved
 from tankcalc.tui.present import Line, field_label, wrapped
 from tankcalc.tui.screens.dialog import Dialog
+from tankcalc.tui.widgets.choice_field import ChoiceField, Turned
 from tankcalc.tui.widgets.lines import Lines
 from tankcalc.tui.widgets.word_field import WordField
+from tankcalc.tui.work import begin
 
 if TYPE_CHECKING:
-    from tankcalc.shiftlog import Receipt
+    from tankcalc.shiftlog import Receipt, Step
     from tankcalc.tui.logbook import LogBook
 
 
 @dataclass(frozen=True, slots=True)
 class Outcome:
-    """What came of it: the entry that was sent, if any, and the receipt when it is on disk."""
+    """What came of it.
 
-    who: str
-    note: str
+    Attributes
+    ----------
+    answers : mapping of str to str
+        What was answered, by name.
+    sent : Unsaved or None
+        The entry that was sent, if any.
+    receipt : Receipt or None
+        There when the entry is on disk.
+    step : Step or None
+        The step of the clock that was logged before it.
+    touched : bool
+        Whether anything was typed or chosen before the dialog was left.
+    """
+
+    answers: Answers = field(default_factory=dict)
     sent: Unsaved | None = None
     receipt: Receipt | None = None
+    step: Step | None = None
+    touched: bool = False
 
 
 class SaveDialog(Dialog[Outcome]):
-    """Asks who and what note, saves on Enter, and says so when it is not saved."""
+    """Asks what is to be asked, saves on Enter, and says so when it is not saved."""
 
     DEFAULT_CSS = """
-    SaveDialog #asked { height: 2; }
-    SaveDialog #labels { width: 15; height: 2; }
+    SaveDialog #asked { height: auto; }
+    SaveDialog #labels { width: 15; }
+    SaveDialog #answers { width: 1fr; height: auto; }
     """
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("enter", "save", show=False),
@@ -48,129 +67,187 @@ class SaveDialog(Dialog[Outcome]):
         Binding("down", "app.focus_next", show=False),
     ]
     KEYS_TEXT = "Enter saves it   Esc goes back: nothing is logged, nothing is lost"
+    ASKS: ClassVar[Sequence[Ask]] = ()
+    START = "note"
+    """Where the keys go first, once it is known who it is."""
+    LIVE: ClassVar[frozenset[str]] = frozenset()
+    """Names of the words that change what is shown."""
 
-    def __init__(self, book: LogBook, who: str, note: str, sent: Unsaved | None = None) -> None:
+    def __init__(
+        self, book: LogBook, answers: Mapping[str, str], sent: Unsaved | None = None
+    ) -> None:
         super().__init__()
         self._book = book
-        self._who, self._note = who, note
+        self._given = dict(answers)
         self._sent = sent
-        self._saving = False
+        self.on_send: Callable[[Outcome], None] = lambda _outcome: None
+        """Called before an entry goes out: it can be kept where a crash does not reach it."""
+        self._saving = self._asked_why = False
+        self._refusal = ""
         self._told: list[Line] = []
+        self._at_first: dict[str, str] = {}
 
     @abstractmethod
-    def make(self, who: str, note: str) -> Unsaved:
+    def make(self, answers: Answers) -> Unsaved:
         """Return the entry to be saved; an InputError where there is none to be made."""
 
     @abstractmethod
-    def subject(self) -> list[Line]:
+    def subject(self, answers: Answers) -> Sequence[Line]:
         """Return what will be logged, in words."""
 
+    async def prepare(self) -> None:
+        """Read from the log what the entry needs; an InputError where there can be none."""
+
+    def doubt(self, answers: Answers) -> tuple[str, str]:
+        """Return what to say once before it is saved, and where the keys go then."""
+        del answers
+        return "", ""
+
+    @property
+    def asks(self) -> Sequence[Ask]:
+        """What is asked."""
+        return self.ASKS
+
+    @property
+    def other_rows(self) -> int:
+        """Rows that are no text: title, keys and what is asked."""
+        return 2 + len(self.asks)
+
+    @property
+    def answers(self) -> dict[str, str]:
+        """What is answered by now."""
+        held = {widget.id or "": widget.value for widget in self.query(WordField)}
+        held |= {widget.id or "": widget.value for widget in self.query(ChoiceField)}
+        return {**self._given, **held}
+
     def fields(self) -> ComposeResult:
-        """Ask for who and for the note."""
+        """Lay out what is asked."""
         with Horizontal(id="asked"):
-            yield Lines(id="labels")
-            with Vertical():
-                yield WordField("who", self._who, 80)
-                yield WordField("note", self._note, 200)
+            labels = Lines(id="labels")
+            labels.styles.height = len(self.asks)
+            yield labels
+            with Vertical(id="answers"):
+                for ask in self.asks:
+                    given = self._given.get(ask.name, "")
+                    if ask.options:
+                        yield ChoiceField(ask.name, ask.options, given)
+                    else:
+                        yield WordField(ask.name, given, ask.longest)
 
     def on_mount(self) -> None:
-        """Go where something is missing."""
+        """Go where something is missing, and read what is needed."""
         super().on_mount()
-        self._field("note" if self._who else "who").focus()
+        self._at_first = self.answers
+        names = [ask.name for ask in self.asks]
+        nobody = names[0] == "who" and not self._given.get("who")
+        self.go("who" if nobody else self.START)
         if self._sent is not None:
             self._freeze()
-            self._tell("NOT SAVED before; Enter sends the same entry again.", "refused")
+            self.tell("NOT SAVED before; Enter sends the same entry again.", "refused")
+        self._prepared = begin(self, self._prepare)
 
     def on_descendant_focus(self) -> None:
         """Mark where the keys go."""
         at = self.focused.id if self.focused is not None else ""
-        labels = [field_label(name, name == at, False) for name in ("who", "note")]
+        labels = [field_label(ask.label, ask.name == at, False) for ask in self.asks]
         self.query_one("#labels", Lines).show(labels)
 
     def on_input_submitted(self, event: Input.Submitted) -> None:
-        """Save from either field."""
+        """Save from any field."""
         event.stop()
         self.action_save()
 
+    def on_input_changed(self, event: Input.Changed) -> None:
+        """Show what becomes of it."""
+        event.stop()
+        if event.input.id in self.LIVE:
+            self.say(self.text())
+
+    def on_turned(self, _message: Turned) -> None:
+        """Show what becomes of it."""
+        self.say(self.text())
+
     def text(self) -> list[Line]:
         """Return what became of it, and what will be logged."""
-        return [*self._told, *self.subject()]
+        return [*self._told, *self.subject(self.answers)]
 
     def action_save(self) -> None:
         """Send the entry; once it was sent, the very same one is sent again."""
-        if not self._saving and self._prepared():
+        if not self._saving:
             self._saving = True
-            self._freeze()
-            self._tell("Saving ...", "")
-            self.run_worker(self._save())
+            begin(self, self._save)
 
     def action_leave(self) -> None:
         """Go back; not while the disk is being written to."""
         if not self._saving:
-            self.dismiss(Outcome(self._field("who").value, self._field("note").value, self._sent))
+            touched = self.answers != self._at_first
+            self.dismiss(Outcome(self.answers, self._sent, touched=touched))
 
-    def _prepared(self) -> bool:
-        """Return whether there is an entry to send; otherwise say what is missing."""
-        who, note = self._field("who").value.strip(), self._field("note").value.strip()
-        if self._sent is not None:
-            return True
-        if not who:
-            self._field("who").focus()
-            self._tell("Who is it? Type your name or initials, then Enter.", "check")
-            return False
-        try:
-            self._sent = self.make(who, note)
-        except InputError as error:
-            self._field("note").focus()
-            self._tell(str(error), "check")
-        return self._sent is not None
+    def go(self, name: str) -> None:
+        """Go to what is asked under that name."""
+        self.query_one(f"#{name}").focus()
 
-    async def _save(self) -> None:
-        assert self._sent is not None
-        try:
-            receipt = await self._book.append(self._sent)
-        except StoreError as error:
-            self._tell(f"NOT SAVED: {error}", "refused")
-            self.keys("Enter tries again   Esc goes back and keeps what was typed")
-        else:
-            entry = self._sent.entry
-            self.dismiss(Outcome(entry.who, entry.note, self._sent, receipt))
-        finally:
-            self._saving = False
-
-    def _freeze(self) -> None:
-        """Let nothing be changed in an entry that was sent."""
-        for field in self.query(WordField):
-            field.disabled = True
-
-    def _tell(self, words: str, style: str) -> None:
+    def tell(self, words: str, style: str) -> None:
+        """Say something above what will be logged."""
         self._told = wrapped(words, style, self.size.width - 2)
         self.say(self.text())
 
-    def _field(self, name: str) -> WordField:
-        return self.query_one(f"#{name}", WordField)
+    async def _prepare(self) -> None:
+        try:
+            await self.prepare()
+        except InputError as error:
+            self._refusal = str(error)
+            self.tell(self._refusal, "refused")
+        except StoreError as error:
+            self.tell(f"The log cannot be read: {error}", "refused")
+        else:
+            self.say(self.text())
 
+    async def _save(self) -> None:
+        try:
+            if self._sent is None:
+                await self._prepared.wait()
+                self._sent = self._made()
+            if self._sent is not None:
+                await self._send(self._sent)
+        finally:
+            self._saving = False
 
-class SaveReading(SaveDialog):
-    """Shows a reading and what it came to, and saves it.
+    def _made(self) -> Unsaved | None:
+        """Return the entry to send; None where something is to be said first."""
+        answers = self.answers
+        try:
+            made = self.make(answers)
+        except InputError as error:
+            if isinstance(error, MissingError):
+                self.go(error.name)
+            self.tell(self._refusal or str(error), "check")
+            return None
+        name, words = self.doubt(answers)
+        if self._refusal or (words and not self._asked_why):
+            self._asked_why = True
+            if name:
+                self.go(name)
+            self.tell(self._refusal or words, "check")
+            return None
+        return made
 
-    The entry is made when this opens, so that no number of Enters can log it twice.
-    """
+    async def _send(self, sent: Unsaved) -> None:
+        self._freeze()
+        self.tell("Saving ...", "")
+        self.on_send(Outcome(self.answers, sent))
+        try:
+            receipt, step = await self._book.append(sent)
+        except StoreError as error:
+            self.tell(f"NOT SAVED: {error}", "refused")
+            self.keys("Enter tries again   Esc goes back and keeps what was typed")
+        else:
+            self.dismiss(Outcome(self.answers, sent, receipt, step))
 
-    TITLE_TEXT = "LOG THIS READING?"
-
-    def __init__(
-        self, book: LogBook, unsaved: Unsaved, who: str, subject: Sequence[Line], *, again: bool
-    ) -> None:
-        super().__init__(book, who, unsaved.entry.note, unsaved if again else None)
-        self._unsaved = unsaved
-        self._subject = list(subject)
-
-    def make(self, who: str, note: str) -> Unsaved:
-        """Return the entry with who and note, under the identifier it was opened with."""
-        entry = replace(self._unsaved.entry, who=who, note=note)
-        return Unsaved(entry, self._unsaved.texts)
-
-    def subject(self) -> list[Line]:
-        """Return tank, readings as typed, and the result."""
-        return self._subject
+    def _freeze(self) -> None:
+        """Let nothing be changed in an entry that was sent; Enter and Esc stay."""
+        for words in self.query(WordField):
+            words.disabled = True
+        for choice in self.query(ChoiceField):
+            choice.freeze()
+        self.on_descendant_focus()

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from textual import events
 from textual.geometry import Size
+from textual.message_pump import MessagePump
 from textual.reactive import Reactive
 from textual.widgets import Input
 
@@ -23,7 +24,7 @@ class EntryField(Input):
     # The library lays the whole screen out anew for every change of this; one row never needs it.
     virtual_size = Reactive(Size(0, 0), layout=False)
 
-    def __init__(self, field: Field, value: str = "") -> None:
+    def __init__(self, field: Field, value: str = "", tell: MessagePump | None = None) -> None:
         note = field.name == NOTE
         super().__init__(
             value,
@@ -36,14 +37,15 @@ class EntryField(Input):
             validate_on=(),
         )
         self.field = field
+        self._tell = tell
         # A blinking cursor would send bytes for ever.
         self.cursor_blink = False
 
     def on_input_changed(self, event: Input.Changed) -> None:
         """Tell what the field holds."""
         event.stop()
-        # Straight to the app: at every widget on the way up the answer would wait its turn.
-        self.app.post_message(EntryChanged(self.field.name, event.value))
+        # Straight to whoever answers: at every widget on the way up the answer would wait its turn.
+        (self._tell or self.app).post_message(EntryChanged(self.field.name, event.value))
 
     def on_input_blurred(self, event: Input.Blurred) -> None:
         """Tell the screen that the field was left."""

@@ -9,6 +9,7 @@ from textual import events
 from textual.app import ComposeResult
 from textual.binding import Binding, BindingType
 from textual.containers import ScrollableContainer, Vertical
+from textual.message_pump import MessagePump
 
 from tankcalc.tui.fields import FIELDS, by_name, fields_of
 from tankcalc.tui.messages import FieldsMoved
@@ -31,8 +32,9 @@ class EntryForm(ScrollableContainer, can_focus=False):
         Binding("pagedown", "screen.page_log(1)", show=False),
     ]
 
-    def __init__(self, *, id: str) -> None:
+    def __init__(self, *, id: str, tell: MessagePump | None = None) -> None:
         super().__init__(id=id)
+        self._tell = tell
         self._fields = [field for field in fields_of({AT_FIRST}) if not field.later]
         self._problems: Collection[str] = ()
 
@@ -40,7 +42,7 @@ class EntryForm(ScrollableContainer, can_focus=False):
         """Make the first field; every other one costs start-up time, and follows."""
         yield Lines(self._labels, id="labels")
         with Vertical(id="fields"):
-            yield EntryField(by_name(AT_FIRST))
+            yield EntryField(by_name(AT_FIRST), tell=self._tell)
 
     @property
     def below(self) -> int:
@@ -62,7 +64,7 @@ class EntryForm(ScrollableContainer, can_focus=False):
         """Make the other fields, holding these texts."""
         have = {widget.field.name for widget in self.query(EntryField)}
         missing = [field for field in FIELDS if field.name not in have]
-        made = [EntryField(field, typed.get(field.name, "")) for field in missing]
+        made = [EntryField(one, typed.get(one.name, ""), self._tell) for one in missing]
         self._show_only(made)
         # The first field is there already, and stands first.
         await self.query_one("#fields").mount_all(made)

@@ -1,62 +1,82 @@
-"""The log of this shift: a window over a list, as long as the shift makes it."""
+"""The log of the shift: a window over a list of any length."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
-from typing import ClassVar
+import time
+from typing import TYPE_CHECKING, ClassVar
 
 from textual.binding import Binding, BindingType
 
-from tankcalc.tui.present import Line, clip, spread
+from tankcalc.tui.commands import PANE_COMMANDS
+from tankcalc.tui.messages import CommandGiven
+from tankcalc.tui.present import CAUTION, Line, clip, spread, wrapped
 from tankcalc.tui.widgets.lines import Lines
 
-Rows = Callable[[int], Sequence[Line]]
-"""Makes the rows of all entries for a width."""
+if TYPE_CHECKING:
+    from tankcalc.tui.log_front import LogFront
+
+SHORT_CAUTION = "no safety function"
+"""Said of the program while the title of the log needs the room."""
 
 
 class LogPane(Lines, can_focus=True):
-    """A title and the newest entries; older ones by moving up."""
+    """A title and the newest entries; older ones by moving up, one of them opens with Enter."""
 
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("up", "move(-1)", show=False),
         Binding("down", "move(1)", show=False),
-        Binding("home", "move(-9999)", show=False),
-        Binding("end", "move(9999)", show=False),
+        Binding("home", "home", show=False),
+        Binding("end", "end", show=False),
+        *(Binding(c.key, f"give('{c.id}')", c.label, show=False) for c in PANE_COMMANDS),
     ]
 
     def __init__(self, *, id: str) -> None:
         super().__init__(id=id)
-        self._rows_for: Rows = lambda _width: ()
-        self._count = 0
-        self._left, self._right = "LOG", ""
-        self._from_end = 0
+        self._front: LogFront | None = None
+        self._trouble = ""
 
-    def update(self, rows_for: Rows, count: int, left: str, right: str) -> None:
-        """Show so many entries; what is in sight stays there unless it is the end."""
-        if self._from_end:
-            self._from_end += count - self._count
-        self._rows_for, self._count = rows_for, count
-        self._left, self._right = left, right
+    def open(self, front: LogFront) -> None:
+        """Show a log from now on."""
+        self._front = front
         self.rebuild()
+
+    def fail(self, trouble: str) -> None:
+        """Say that there is no log to show."""
+        self._front, self._trouble = None, trouble
+        self.rebuild()
+
+    def action_give(self, command: str) -> None:
+        """Pass a command on."""
+        self.post_message(CommandGiven(command))
 
     def action_move(self, by: int) -> None:
-        """Move down that many entries."""
-        self._from_end -= by
-        self.rebuild()
+        """Mark the entry that many rows below."""
+        if self._front is not None:
+            self._front.move(by)
+
+    def action_home(self) -> None:
+        """Go to the oldest entry."""
+        if self._front is not None:
+            self._front.home()
+
+    def action_end(self) -> None:
+        """Go to the newest entry."""
+        if self._front is not None:
+            self._front.end(time.time_ns() // 1000)
 
     def page(self, by: int) -> None:
         """Move by whole panes."""
-        self.action_move(by * max(self.size.height - 1, 1))
+        if self._front is not None:
+            self._front.page(by)
 
     def build(self, width: int, height: int) -> list[Line]:
         """Return the title and the entries in sight."""
-        room, rows = max(height - 1, 1), self._rows_for(width)
-        self._from_end = min(max(self._from_end, 0), max(len(rows) - room, 0))
-        last = len(rows) - self._from_end
-        first = max(last - room, 0)
-        above = f", {first} above" if first else ""
-        below = f", {self._from_end} below" if self._from_end else ""
-        mark = ">" if self.has_focus else " "
-        left = f"{mark}{self._left}{above}{below}"
-        title: Line = [(spread(clip(left, width), self._right, width), "title")]
-        return [title, *rows[first:last]]
+        if self._front is None:
+            return [self._title("LOG", width), *wrapped(self._trouble, "refused", width)]
+        title, *rows = self._front.lines(width, height, focused=self.has_focus)
+        return [self._title(title[0][0], width), *rows]
+
+    def _title(self, words: str, width: int) -> Line:
+        caution = SHORT_CAUTION if self.has_focus else CAUTION
+        left = clip(f"{'>' if self.has_focus else ' '}{words}", width - len(caution) - 1)
+        return [(spread(left, caution, width), "title")]

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Collection, Mapping, Sequence
 from typing import ClassVar
 
 from textual.binding import Binding, BindingType
@@ -29,6 +29,7 @@ class TankList(Lines, can_focus=True):
         self._chosen = 0
         self._unfinished: Collection[str] = ()
         self._broken: Collection[str] = ()
+        self._alerts: Mapping[str, tuple[str, str]] = {}
 
     def update(
         self,
@@ -41,6 +42,11 @@ class TankList(Lines, can_focus=True):
         self._names = list(names)
         self._chosen = self._names.index(chosen) if chosen in self._names else 0
         self._unfinished, self._broken = unfinished, broken
+        self.rebuild()
+
+    def alert(self, alerts: Mapping[str, tuple[str, str]]) -> None:
+        """Show what stands beside the tanks that have alerts: a symbol and a word."""
+        self._alerts = alerts
         self.rebuild()
 
     def action_move(self, by: int) -> None:
@@ -65,5 +71,6 @@ class TankList(Lines, can_focus=True):
         for index, name in enumerate(self._names[first : first + room], start=first):
             chosen = index == self._chosen
             mark = "+" if name in self._unfinished else "!" if name in self._broken else " "
-            lines.append(tank_line(name, mark, chosen, chosen and self.has_focus, width))
+            alert = self._alerts.get(name, ("", ""))
+            lines.append(tank_line(name, mark, chosen, chosen and self.has_focus, width, alert))
         return lines
