@@ -22,9 +22,12 @@ COMMANDS = {
     "convert": "readings of one tank to level, volume and mass",
     "strap": "print a capacity table",
     "span": "what each transmitter should read, empty to full",
+    "plan": "room, time to a limit, when to call stop, what a receipt does",
     "vet": "check profile files: every problem, with file, line and key",
     "begin": "write a commented starter site",
     "shiftlog": "add to, list and verify the log",
+    "balance": "opening, movements, closing, gain or loss",
+    "handover": "the report from one shift to the next",
 }
 """Every command with what it does, in the order of the help."""
 
