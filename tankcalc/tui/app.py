@@ -88,6 +88,11 @@ class ConsoleApp(App[None]):
         filters = super().get_line_filters()
         return [*filters, AsciiOnly()] if self.options.ascii else filters
 
+    @property
+    def quiet_s(self) -> float:
+        """For how long no key has come."""
+        return self._keys.quiet_s
+
     async def on_event(self, event: events.Event) -> None:
         """Take keys and pastes one at a time."""
         if isinstance(event, events.Key | events.Paste) and not event.is_forwarded:

@@ -8,6 +8,8 @@ that come one by one pass without delay.
 from __future__ import annotations
 
 import asyncio
+import math
+import time
 from collections.abc import Awaitable, Callable
 from contextlib import suppress
 from dataclasses import dataclass, field
@@ -53,9 +55,16 @@ class KeyLine:
         self._forward = forward
         self._target = target
         self._waiting: asyncio.Queue[events.Event] = asyncio.Queue()
+        self._came = -math.inf
+
+    @property
+    def quiet_s(self) -> float:
+        """For how long no key has come."""
+        return time.monotonic() - self._came
 
     def put(self, event: events.Event) -> None:
         """Take a key or a paste."""
+        self._came = time.monotonic()
         for one in apart(event):
             self._waiting.put_nowait(one)
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import asyncio
 import time
 from collections.abc import Callable
 from contextlib import closing
@@ -18,6 +19,12 @@ if TYPE_CHECKING:
     from tankcalc.shiftlog import Store
     from tankcalc.tui.app import ConsoleApp
     from tankcalc.watch import Kept, Watched
+
+QUIET_S = 1.0
+"""A look begins when no key has come for so long."""
+
+PATIENCE_S = 20.0
+"""Longest wait for that: alerts are looked for also while somebody types on and on."""
 
 SLOW_US = 90_000_000
 """A look that takes longer is told: what was found before may be true no longer."""
@@ -87,11 +94,18 @@ class Watching:
             self._again = True
             while self._again:
                 self._again = False
+                await self._quiet()
                 self.began_us = now_us()
                 await self._look_once(site)
                 self._tell()
         finally:
             self._looking = False
+
+    async def _quiet(self) -> None:
+        """Wait for a pause in the keys: a busy thread makes what is being typed stutter."""
+        end = time.monotonic() + PATIENCE_S
+        while (wait := QUIET_S - self._app.quiet_s) > 0.0 and time.monotonic() < end:
+            await asyncio.sleep(wait)
 
     async def _look_once(self, site: Site) -> None:
         try:
