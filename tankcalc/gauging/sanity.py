@@ -72,11 +72,6 @@ def impossible_density(model: Model, groups: Sequence[Group]) -> Iterator[Notice
         )
 
 
-def needs_pressure(model: Model) -> bool:
-    """Return whether the vapour's density follows from a pressure that has to be known."""
-    return model.vapour_thins
-
-
 def blanket_unread(model: Model, by: str) -> Notice:
     """Refuse where the readings leave the surface open: an unread pressure above the liquid."""
     relief = model.case.tank.relief_pa

@@ -17,7 +17,6 @@ from tankcalc.gauging.model import Model, State
 from tankcalc.gauging.sanity import (
     blanket_unread,
     impossible_density,
-    needs_pressure,
     outside,
     too_light,
     unsettled,
@@ -116,7 +115,7 @@ def _refusals(
     else:
         checks = contradictions(model, by, state, unknown)
     checks = (*checks, *impossible, *too_light(model, state, unknown))
-    if blind and by == "dp" and needs_pressure(model):
+    if blind and by == "dp" and model.vapour_thins:
         checks = (*checks, blanket_unread(model, by))
     if by not in DIRECT:
         seen = unknown | _rows_of(checks, model.case.shape)

@@ -7,6 +7,7 @@ from dataclasses import replace
 import numpy as np
 import numpy.typing as npt
 
+from tankcalc.gauging.amounts import free_water_m3
 from tankcalc.gauging.case import BoolArray, FloatArray
 from tankcalc.gauging.model import Model, State
 from tankcalc.gauging.words import length
@@ -29,9 +30,7 @@ def roof_in_water(model: Model, state: State) -> BoolArray:
         return np.zeros(state.surface_m.shape, dtype=bool)
     volume, product, _ = model.contents(state)
     afloat = state.surface_m >= roof.floats_at_m
-    water = model.case.tank.vessel.volume_below(
-        np.minimum(state.surface_m, max(top, model.case.tank.vessel.z_min)), state.surface_m
-    )
+    water = free_water_m3(model.case, state.surface_m)
     return np.asarray(afloat & ((volume < water) | (product < 0.0)))
 
 
